@@ -1,0 +1,168 @@
+package spectral
+
+import (
+	"math"
+	"math/rand/v2"
+	"testing"
+
+	"github.com/stretchr/testify/assert"
+	"github.com/stretchr/testify/require"
+
+	"codeassay/estimators/fourier"
+)
+
+// flatBand is Gaussian noise with a flat spectrum below fc, unit variance.
+func flatBand(rng *rand.Rand, n int, dt, fc float64) []float64 {
+	size := 16
+	for size < n {
+		size *= 2
+	}
+	plan := fourier.NewPlan(size)
+	x := make([]float64, size)
+	// A sum of random sinusoids on the grid of the padded length, by one
+	// transform of a random spectrum: Re Σ_k Z_k e^{2πikt/n}.
+	re, im := make([]float64, size), make([]float64, size)
+	bins := int(fc * float64(size) * dt)
+	for k := 0; k <= bins; k++ {
+		re[k], im[k] = rng.NormFloat64(), rng.NormFloat64()
+	}
+	z := plan.NewPacked()
+	plan.Pack(z, re, im, nil, nil)
+	plan.Forward(z)
+	a, b := make([]complex128, size/2+1), make([]complex128, size/2+1)
+	plan.Select(0, size/2+1).Spectrum(a, b, z)
+	// The complex transform at t is A + iB; its real part is Re A − Im B.
+	for t := range size {
+		k := t
+		sign := 1.0
+		if k > size/2 {
+			k, sign = size-t, -1
+		}
+		x[t] = (real(a[k]) - sign*imag(b[k])) / math.Sqrt(float64(bins+1))
+	}
+	return x[:n]
+}
+
+// A flat 20 Hz stream in white noise at signal-to-noise ratio S carries
+// 20 log2(1+S) bits/s (Shannon 1949). Mean of 40 estimates within 4 standard
+// errors plus the predicted smear; intervals must hold the truth as often as a
+// binomial of 40 at 95 % allows at 0.1 % (≥ 32).
+func TestInformationOfAWhiteChannel(t *testing.T) {
+	const dt, fc, seconds, runs = 0.005, 20.0, 150.0, 40
+	rng := rand.New(rand.NewPCG(5, 6))
+	n := int(seconds / dt)
+	for _, snr := range []float64{0.3, 3} {
+		truth := fc * math.Log2(1+snr)
+		// Two-sided density of unit variance over ±20 Hz is 1/40; of white
+		// samples of variance σ² it is σ² dt.
+		sigma := math.Sqrt(1 / (2 * fc) / snr / dt)
+		sum, sum2, held := 0.0, 0.0, 0
+		for range runs {
+			x := flatBand(rng, n, dt, fc)
+			y := make([]float64, n)
+			for i := range y {
+				y[i] = 2 + x[i] + sigma*rng.NormFloat64()
+			}
+			r, err := Information(x, y, Options{SampleInterval: dt, HighHz: fc})
+			require.NoError(t, err)
+			sum += r.BitsPerS
+			sum2 += r.BitsPerS * r.BitsPerS
+			if r.Low <= truth && truth <= r.High {
+				held++
+			}
+			assert.Less(t, r.PValue, 1e-6)
+		}
+		mean := sum / runs
+		se := math.Sqrt((sum2/runs - mean*mean) / (runs - 1))
+		sd := se * math.Sqrt(runs)
+		assert.InDelta(t, truth, mean, 4*se+0.3*sd, "snr %g", snr)
+		assert.GreaterOrEqual(t, held, 32, "snr %g", snr)
+	}
+}
+
+// Independent signals are called so at the nominal rate: of 1000 tests at 5 %,
+// 27 to 76 reject (99.9 % binomial range), and estimates average to zero.
+func TestIndependenceHasItsSize(t *testing.T) {
+	const dt, fc, runs = 0.01, 20.0, 1000
+	rng := rand.New(rand.NewPCG(7, 8))
+	n := 4096
+	rejected, sum, sum2 := 0, 0.0, 0.0
+	for range runs {
+		x := flatBand(rng, n, dt, fc)
+		y := make([]float64, n)
+		for i := range y {
+			y[i] = rng.NormFloat64()
+		}
+		r, err := Information(x, y, Options{SampleInterval: dt, HighHz: fc})
+		require.NoError(t, err)
+		if r.PValue < 0.05 {
+			rejected++
+		}
+		sum += r.BitsPerS
+		sum2 += r.BitsPerS * r.BitsPerS
+	}
+	mean := sum / runs
+	se := math.Sqrt((sum2/runs - mean*mean) / runs)
+	assert.InDelta(t, 0, mean, 4*se)
+	assert.GreaterOrEqual(t, rejected, 27)
+	assert.LessOrEqual(t, rejected, 76)
+}
+
+func TestInformationRefusesBadInput(t *testing.T) {
+	ok := make([]float64, 100)
+	for i := range ok {
+		ok[i] = math.Sin(float64(i))
+	}
+	bad := append([]float64(nil), ok...)
+	bad[7] = math.NaN()
+	cases := []struct {
+		x, y []float64
+		o    Options
+		want string
+	}{
+		{ok, ok[:99], Options{SampleInterval: 1}, "the stream has 100 samples and the code 99: they must be sampled together"},
+		{ok, ok, Options{}, "sample interval 0 s: must be positive"},
+		{bad, ok, Options{SampleInterval: 1}, "stream: sample 7 is NaN: must be finite"},
+		{ok, make([]float64, 100), Options{SampleInterval: 1}, "code is constant: it can neither inform nor be informed about"},
+		{ok, ok, Options{SampleInterval: 1, HighHz: 0.6}, "band 0 to 0.6 Hz: must rise, and end at or below 0.5 Hz"},
+		{ok[:20], ok[:20], Options{SampleInterval: 1, HighHz: 0.5}, "20 samples hold fewer than 2 segments of at least 16"},
+	}
+	for _, c := range cases {
+		_, err := Information(c.x, c.y, c.o)
+		assert.EqualError(t, err, c.want)
+	}
+}
+
+// Signals that determine each other give a large finite rate.
+func TestPerfectCoherenceIsFinite(t *testing.T) {
+	rng := rand.New(rand.NewPCG(9, 10))
+	x := make([]float64, 4000)
+	for i := range x {
+		x[i] = rng.NormFloat64()
+	}
+	r, err := Information(x, x, Options{SampleInterval: 0.01, HighHz: 20})
+	require.NoError(t, err)
+	assert.False(t, math.IsInf(r.BitsPerS, 0) || math.IsNaN(r.BitsPerS))
+	assert.Greater(t, r.BitsPerS, 20*40.0)
+}
+
+func TestChooseLength(t *testing.T) {
+	// 600 s at 20 Hz and 1 ms: smear asks for 11.9 s, so 16.384 s and 36 segments.
+	length, warnings := ChooseLength([]int{600000}, 0.001, 20, 2)
+	assert.Equal(t, 16384, length)
+	assert.Empty(t, warnings)
+	// 30 s: 15 segments win over the smear, and that is said.
+	length, warnings = ChooseLength([]int{30000}, 0.001, 20, 2)
+	assert.Equal(t, 1024, length)
+	require.Len(t, warnings, 1)
+	assert.Contains(t, warnings[0].Text, "smeared away")
+	length, _ = ChooseLength([]int{20}, 0.001, 20, 2)
+	assert.Zero(t, length)
+	// Many short trials: a segment cannot exceed a trial.
+	short := make([]int, 300)
+	for i := range short {
+		short[i] = 2000
+	}
+	length, _ = ChooseLength(short, 0.001, 20, 2)
+	assert.Equal(t, 1024, length)
+}
