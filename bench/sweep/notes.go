@@ -1,0 +1,93 @@
+package sweep
+
+import (
+	"fmt"
+	"math"
+
+	"codeassay/bench"
+	"codeassay/estimators"
+)
+
+// notePower says where frequencies were left out because a stream has next to no
+// power there.
+func (p *plan) notePower() {
+	said := map[[2]int]bool{}
+	for row, key := range p.layout.Rows {
+		if key.Kind != bench.Single || !p.methods[key.Estimator].info.Spectral || said[[2]int{key.Stream, key.Band}] {
+			continue
+		}
+		said[[2]int{key.Stream, key.Band}] = true
+		band, used := p.layout.Bands[key.Band], p.layout.Info[row].UsedHz
+		width := band.High - band.Low
+		if used > 0.99*width {
+			continue
+		}
+		p.warnings = append(p.warnings, estimators.Warning{Severity: estimators.Note, About: p.layout.Streams[key.Stream],
+			Text: fmt.Sprintf("%.3g of the %.3g Hz from %.3g to %.3g Hz were left out: the stream has less than 1e-6 of its peak power there, so nothing can be known about it",
+				width-used, width, band.Low, band.High),
+			Remedy: "nothing, or bands_hz within the stream's own band"})
+	}
+}
+
+// noteSampling says where the plug-in tables hold too few windows to trust.
+func (p *plan) noteSampling() {
+	for _, w := range p.windows {
+		perCell := float64(w.total) / float64(w.levels*w.levels)
+		if perCell >= 8 {
+			continue
+		}
+		severity := estimators.Note
+		if perCell < 4 {
+			severity = estimators.Weak
+		}
+		more := (8*float64(w.levels*w.levels) - float64(w.total)) * float64(w.bins) * p.bin
+		p.warnings = append(p.warnings, estimators.Warning{Severity: severity, About: "plug-in",
+			Text: fmt.Sprintf("%d windows of %.3g ms give %.2g samples a cell of the %d × %d table: too thin for the plug-in information to be trusted",
+				w.total, float64(w.bins)*p.bin*1e3, perCell, w.levels, w.levels),
+			Remedy: fmt.Sprintf("record ≥ %.0f s more", math.Ceil(more))})
+	}
+}
+
+// noteFrozen says what repeats of one input do to the numbers.
+func (p *plan) noteFrozen() {
+	if !p.frozen {
+		return
+	}
+	p.warnings = append(p.warnings, estimators.Warning{Severity: estimators.Note, About: "trials",
+		Text: fmt.Sprintf("%d repeats of one input: the stream is sampled only once, so intervals rest on %d stretches of it, and the further bias that repeats bring was corrected to first order",
+			len(p.trialBins()), len(p.blocks)),
+		Remedy: "fresh input in each trial, where it can be had"})
+}
+
+// noteChance holds the data against the burst-free surrogate: a burst code that
+// carries no more about a stream than chance bursts do tells nothing of bursts.
+func (g *engine) noteChance(out *bench.Outcome) {
+	full := -1
+	for i, piece := range out.Pieces {
+		if piece.Draw == 0 {
+			full = i
+		}
+	}
+	if full < 0 || out.Chance == nil {
+		return
+	}
+	for row, key := range g.layout.Rows {
+		if key.Kind != bench.Single || key.Estimator != 0 || !g.methods[0].info.Spectral {
+			continue
+		}
+		code := g.codes.codes[key.Code]
+		if code.Spikes || code.Weights[0] != 0 {
+			continue // not a code of bursts
+		}
+		info := g.layout.Info[row]
+		value, chance := out.Pieces[full].Value[0].Full[row], out.Chance.Full[row]
+		threshold := 4 * math.Sqrt(info.NullVar) / math.Ln2
+		if chance < threshold || value > chance {
+			continue
+		}
+		out.Warnings = append(out.Warnings, estimators.Warning{Severity: estimators.Weak, About: code.Name,
+			Text: fmt.Sprintf("chance bursts of cells without bursts would carry %.3g bits/s about %s by this code; the data carry %.3g: what it says of this stream may be the event rate alone",
+				chance, g.layout.Streams[key.Stream], value),
+			Remedy: "a shorter max_isi_ms, cells with lower rates, or hold to codes that beat the surrogate"})
+	}
+}

@@ -1,0 +1,372 @@
+package sweep
+
+import (
+	"context"
+	"slices"
+	"sync"
+	"sync/atomic"
+
+	"codeassay/bench"
+	"codeassay/decoders"
+	"codeassay/decoders/tally"
+	"codeassay/estimators"
+	"codeassay/estimators/seed"
+)
+
+// batchBytes bounds the memory of the draws that are measured side by side;
+// longer sweeps take more passes over the blocks.
+const batchBytes = 192 << 20
+
+// cellGroups is the number of groups of cells that are left out in turn.
+const cellGroups = 8
+
+// Request is a sweep to be run.
+type Request struct {
+	Study    bench.Study
+	Codes    []decoders.Code
+	Pairs    [][2]int // into Codes
+	Source   Source
+	Workers  int                   // 0: one
+	Progress func(done, total int) // may be nil; called from one goroutine at a time
+}
+
+// engine is a sweep in progress.
+type engine struct {
+	*plan
+	store    *tally.Store
+	workers  []*worker
+	finish   []*finisher
+	root     seed.Seed
+	progress func(done, total int)
+	steps    atomic.Int64
+	total    int
+	report   sync.Mutex
+}
+
+// Run measures everything that a study asks for. It stops early, with the
+// context's error, when the context is done.
+func Run(ctx context.Context, r Request) (*bench.Outcome, error) {
+	p, err := newPlan(r.Study, r.Codes, r.Pairs, r.Source)
+	if err != nil {
+		return nil, err
+	}
+	store, err := tally.Build(ctx, r.Source, p.rules, p.spans, tally.Options{BinNs: p.binNs, HaloBins: p.halo, Workers: r.Workers})
+	if err != nil {
+		return nil, err
+	}
+	g := &engine{plan: p, store: store, root: seed.New(r.Study.Seed), progress: r.Progress}
+	for range max(1, r.Workers) {
+		g.workers = append(g.workers, p.newWorker(store))
+	}
+	out := &bench.Outcome{ChanceSpikesPerS: 0}
+	batches := g.drawBatches()
+	g.total = len(p.blocks) * (2 + len(batches) + (len(p.layout.Sizes)+g.cellBatch()-1)/g.cellBatch())
+
+	pilot, err := g.pilot(ctx)
+	if err != nil {
+		return nil, err
+	}
+	out.Spectra = g.spectra(&pilot.snapshots[0])
+	if pilot.draw == 0 { // a piece of its own; of a smaller ensemble draw 1 measures it again
+		if err := g.keep(ctx, out, []*job{pilot}); err != nil {
+			return nil, err
+		}
+	}
+	for _, batch := range batches {
+		jobs := make([]*job, len(batch))
+		for i, draw := range batch {
+			jobs[i] = p.nestedJob(store, draw, g.order(draw), g.subSizes())
+		}
+		if err := g.run(ctx, jobs); err != nil {
+			return nil, err
+		}
+		if err := g.keep(ctx, out, jobs); err != nil {
+			return nil, err
+		}
+	}
+	if err := g.measureCells(ctx, out); err != nil {
+		return nil, err
+	}
+	if err := g.measureChance(ctx, out); err != nil {
+		return nil, err
+	}
+	g.describe(out)
+	g.noteChance(out)
+	return out, nil
+}
+
+// order is the order in which a draw takes the units: all as they come in draw
+// 0, at random in the others.
+func (g *engine) order(draw int) []int {
+	n := g.layout.Cells
+	if draw == 0 {
+		units := make([]int, n)
+		for i := range units {
+			units[i] = i
+		}
+		return units
+	}
+	return g.root.Child("draw", draw).Perm(nil, n)
+}
+
+// subSizes are the sizes below the full ensemble, which random draws measure.
+func (g *engine) subSizes() []int {
+	var out []int
+	for i, n := range g.layout.Sizes {
+		if n < g.layout.Cells {
+			out = append(out, i)
+		}
+	}
+	return out
+}
+
+// drawBatches groups the draws so that each group fits in memory.
+func (g *engine) drawBatches() [][]int {
+	sizes := len(g.subSizes())
+	if sizes == 0 {
+		return nil
+	}
+	draws := make([]int, g.layout.Draws)
+	for i := range draws {
+		draws[i] = i + 1
+	}
+	return slices.Collect(slices.Chunk(draws, max(1, batchBytes/(sizes*g.snapshotBytes()))))
+}
+
+// pilot measures the largest ensemble, from it the delay of the codes behind
+// each stream, and where there is one measures again with the streams delayed.
+func (g *engine) pilot(ctx context.Context) (*job, error) {
+	last := len(g.layout.Sizes) - 1
+	draw := 0
+	if g.layout.Sizes[last] < g.layout.Cells {
+		draw = 1
+	}
+	for attempt := 0; ; attempt++ {
+		if err := g.sumStreams(ctx); err != nil {
+			return nil, err
+		}
+		j := g.nestedJob(g.store, draw, g.order(draw), []int{last})
+		if err := g.run(ctx, []*job{j}); err != nil {
+			return nil, err
+		}
+		if attempt == 0 && g.settings.Estimate.Align && g.findDelays(&j.snapshots[0]) {
+			g.quantiseStreams()
+			continue
+		}
+		return j, nil
+	}
+}
+
+// sumStreams transforms the streams over all blocks and readies the finishers.
+func (g *engine) sumStreams(ctx context.Context) error {
+	streams := make([][]sums, len(g.methods))
+	for e, m := range g.methods {
+		if !m.info.Spectral {
+			continue
+		}
+		for range g.blocks {
+			streams[e] = append(streams[e], g.newStreamSums(e))
+		}
+	}
+	err := g.parallel(ctx, len(g.blocks), func(w, block int) {
+		dst := make([]sums, len(g.methods))
+		for e := range dst {
+			if g.methods[e].info.Spectral {
+				dst[e] = streams[e][block]
+			}
+		}
+		g.workers[w].streamSums(block, dst)
+		for e := range dst {
+			if g.methods[e].info.Spectral {
+				streams[e][block] = dst[e]
+			}
+		}
+	})
+	if err != nil {
+		return err
+	}
+	streams = g.totals(streams, g.newStreamSums)
+	g.finish = nil
+	for range g.workers {
+		g.finish = append(g.finish, g.newFinisher(streams))
+	}
+	return nil
+}
+
+// run visits all blocks for the jobs.
+func (g *engine) run(ctx context.Context, jobs []*job) error {
+	return g.parallel(ctx, len(g.blocks), func(w, block int) {
+		g.workers[w].visit(block, jobs)
+		g.step(1)
+	})
+}
+
+// step reports progress.
+func (g *engine) step(n int) {
+	done := int(g.steps.Add(int64(n)))
+	if g.progress == nil {
+		return
+	}
+	g.report.Lock()
+	defer g.report.Unlock()
+	g.progress(min(done, g.total), g.total)
+}
+
+// keep finishes jobs of sizes into pieces and releases their sums.
+func (g *engine) keep(ctx context.Context, out *bench.Outcome, jobs []*job) error {
+	for _, j := range jobs {
+		values := make([]bench.Values, len(j.snapshots))
+		piece := g.piece(j, values)
+		measured := len(g.windows) > 0
+		// All draws of a size share one null law: the more draws, the fewer each needs.
+		perDraw := shifts
+		if j.draw > 0 {
+			perDraw = max(4, shifts/g.layout.Draws)
+		}
+		if measured {
+			piece.NullMean, piece.NullVar = make([][]float64, len(values)), make([][]float64, len(values))
+		}
+		err := g.parallel(ctx, len(j.snapshots), func(w, i int) {
+			values[i] = g.finish[w].values(&j.snapshots[i])
+			if measured {
+				piece.NullMean[i], piece.NullVar[i] = g.finish[w].shiftNull(&j.snapshots[i], g.root.Child("null", j.draw, i), perDraw)
+			}
+		})
+		if err != nil {
+			return err
+		}
+		j.snapshots = nil
+		out.Pieces = append(out.Pieces, piece)
+	}
+	return nil
+}
+
+// measureCells measures, size by size, how the information varies with the cells
+// that happened to be recorded.
+func (g *engine) measureCells(ctx context.Context, out *bench.Outcome) error {
+	var jobs []*job
+	flush := func() error {
+		if err := g.run(ctx, jobs); err != nil {
+			return err
+		}
+		pieces := make([]bench.CellPiece, len(jobs))
+		err := g.parallel(ctx, len(jobs), func(w, i int) { pieces[i] = g.finish[w].cellPiece(jobs[i]) })
+		out.Cells = append(out.Cells, pieces...)
+		jobs = nil
+		return err
+	}
+	for i, n := range g.layout.Sizes {
+		draw := 1
+		if n == g.layout.Cells {
+			draw = 0
+		}
+		groups := min(cellGroups, n)
+		if groups < 2 {
+			continue
+		}
+		jobs = append(jobs, g.deletionJob(g.store, g.order(draw), i, groups))
+		if len(jobs) == g.cellBatch() {
+			if err := flush(); err != nil {
+				return err
+			}
+		}
+	}
+	if len(jobs) == 0 {
+		return nil
+	}
+	return flush()
+}
+
+// cellBatch is the number of sizes whose cells are measured side by side.
+func (g *engine) cellBatch() int { return max(1, batchBytes/((1+cellGroups)*g.snapshotBytes())) }
+
+// measureChance ranks the burst-free surrogate of the full ensemble.
+func (g *engine) measureChance(ctx context.Context, out *bench.Outcome) error {
+	var counts tally.Totals
+	for u := range g.layout.Cells {
+		counts = counts.Add(g.store.ChanceTotals(u, g.rules[u], g.totalS()))
+	}
+	j := &job{kind: chance, surrogate: g.root.Child("burst-free"), snapshots: []snapshot{g.newSnapshot(counts, g.layout.Cells)}}
+	if err := g.run(ctx, []*job{j}); err != nil {
+		return err
+	}
+	values := g.finish[0].values(&j.snapshots[0])
+	out.Chance = &values
+	out.ChanceSpikesPerS = j.snapshots[0].of.spikesPerS
+	return nil
+}
+
+// parallel calls do(worker, i) for i in [0, n), each worker with scratch of its
+// own. Results must go to places of their own, so that order does not matter.
+func (g *engine) parallel(ctx context.Context, n int, do func(worker, i int)) error {
+	var next atomic.Int64
+	var wait sync.WaitGroup
+	for w := range g.workers {
+		wait.Go(func() {
+			for {
+				i := int(next.Add(1)) - 1
+				if i >= n || ctx.Err() != nil {
+					return
+				}
+				do(w, i)
+			}
+		})
+	}
+	wait.Wait()
+	return ctx.Err()
+}
+
+// describe adds what the outcome says of the recording and the settings.
+func (g *engine) describe(out *bench.Outcome) {
+	out.Layout = g.layout
+	out.Settings = g.settings
+	out.Settings.Chosen.CellGroups = cellGroups
+	out.Warnings = append(out.Warnings, g.warnings...)
+	var counts tally.Totals
+	chance := 0.0
+	seconds := 0.0
+	for _, trial := range g.src.Trials() {
+		seconds += float64(trial.Duration) * 1e-9
+	}
+	for u := range g.layout.Cells {
+		t := g.store.Totals(u)
+		counts = counts.Add(t)
+		chance += t.EventCount() * decoders.ChanceBurstFraction(t.EventCount()/seconds, g.rules[u].MaxISI)
+	}
+	trains := counts.Trains()
+	events := counts.EventCount()
+	bursts := counts.BurstCount()
+	names := make([]string, len(g.layout.Streams))
+	copy(names, g.layout.Streams)
+	blocks := make([][]tally.Span, len(g.blocks))
+	for j, ids := range g.blocks {
+		for _, id := range ids {
+			blocks[j] = append(blocks[j], g.spans[id])
+		}
+	}
+	used := g.usedS(blocks)
+	out.Recording = bench.RecordingSummary{
+		Cells: g.layout.Cells, Trials: len(g.src.Trials()), TrialMeaning: string(g.src.Meaning()),
+		DurationS: bench.Number(seconds), UsedS: bench.Number(used), Spikes: int64(trains[0]),
+		Events: int64(events), Bursts: int64(bursts), Streams: names,
+		BurstFraction: ratio(bursts, events), ChanceBurstFraction: ratio(chance, events),
+	}
+	for s, lag := range g.lags {
+		out.DelaysMS = append(out.DelaysMS, float64(lag)*g.bin*1e3)
+		out.Settings.Chosen.Delays = append(out.Settings.Chosen.Delays, bench.StreamDelay{Stream: g.layout.Streams[s], DelayMS: bench.Number(out.DelaysMS[s])})
+	}
+	if events == 0 {
+		out.Warnings = append(out.Warnings, estimators.Warning{Severity: estimators.Weak, About: "recording",
+			Text: "there are no spikes in the recording", Remedy: "check the files"})
+	}
+}
+
+func ratio(a, b float64) bench.Number {
+	if b == 0 {
+		return bench.None
+	}
+	return bench.Number(a / b)
+}
+
+// significance is the level of the tests inside a sweep.
+func significance(confidence float64) float64 { return 1 - confidence }
