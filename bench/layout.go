@@ -76,6 +76,13 @@ type Layout struct {
 	Confidence   float64
 }
 
+// CellsFromDraws reports whether the variation between cells at a size is told by
+// the spread between its draws: where these are at least eight, of at most half
+// the units each. Elsewhere groups of cells are left out.
+func (l *Layout) CellsFromDraws(size int) bool {
+	return l.Draws >= 8 && 2*l.Sizes[size] <= l.Cells
+}
+
 // Values are the rows of one ensemble in one draw: the estimate over all
 // blocks, and with each block left out. Unit: bits/s.
 type Values struct {

@@ -46,7 +46,6 @@ type assembler struct {
 	out   *bench.Outcome
 	draws [][]draw           // by size
 	cells []*bench.CellPiece // by size, nil where there is none
-	order []int              // rows of the document's Rows, by layout row
 }
 
 // draw is one measurement of one size.
@@ -173,27 +172,66 @@ func (a *assembler) counts(size int) (spikes, events float64) {
 }
 
 // cellsInterval is the interval for new cells from the same population. To the
-// block variance of the draw mean it adds what cells vary beyond the spiking
-// noise that both variances contain, V_cell − V_cell×block of one ensemble of N
-// cells, times the share of it that is left in a mean over draws from M cells:
-// N/M of it is common to all draws, to first order in the cells' contributions
-// (Hoeffding 1948, Ann. Math. Stat. 19:293–325), the rest averages out.
+// block variance of the draw mean it adds what ensembles vary beyond the spiking
+// noise that block and cell variances both contain, times the share of it that
+// is left in a mean over draws from M cells: N/M of it is common to all draws, to
+// first order in the cells' contributions (Hoeffding 1948, Ann. Math. Stat.
+// 19:293–325), the rest averages out.
 func (a *assembler) cellsInterval(size, row int, mean, blockVar float64) (low, high bench.Number) {
-	c := a.cells[size]
-	if c == nil {
-		return bench.None, bench.None
-	}
 	l := &a.out.Layout
 	share := float64(l.Sizes[size]) / float64(l.Cells)
+	var cellVar, cellDoF float64
+	switch c := a.cells[size]; {
+	case l.CellsFromDraws(size):
+		cellVar, cellDoF = a.betweenDraws(size, row)/(1-share), float64(len(a.draws[size])-1)
+	case c != nil:
+		cellVar, cellDoF = c.CellVar[row]-c.CrossVar[row], float64(c.Groups-1)
+	default:
+		return bench.None, bench.None
+	}
 	left := share + (1-share)/float64(len(a.draws[size]))
-	cellVar := left * math.Max(0, c.CellVar[row]-c.CrossVar[row])
+	cellVar = left * math.Max(0, cellVar)
 	// Welch 1947, Biometrika 34:28–35, and Satterthwaite 1946, Biometrics 2:110–114.
 	dof := a.blockDoF()
 	if total := blockVar + cellVar; total > 0 {
-		dof = total * total / (blockVar*blockVar/a.blockDoF() + cellVar*cellVar/float64(c.Groups-1))
+		dof = total * total / (blockVar*blockVar/a.blockDoF() + cellVar*cellVar/cellDoF)
 	}
 	lo, hi := resampling.TInterval(mean, blockVar+cellVar, dof, l.Confidence)
 	return bench.Number(lo), bench.Number(hi)
+}
+
+// betweenDraws is the variance between the draws of a size beyond their spiking
+// noise: a two-way analysis of variance of jackknife pseudo-values, draws by
+// blocks, whose interaction is the noise that cells have of their own in each
+// block. Draws of N from M cells show 1−N/M of it.
+func (a *assembler) betweenDraws(size, row int) float64 {
+	draws, blocks := a.draws[size], len(a.out.Layout.BlockWeights)
+	total := 0.0
+	for _, w := range a.out.Layout.BlockWeights {
+		total += w
+	}
+	pseudo := make([][]float64, len(draws))
+	byDraw, byBlock, all := make([]float64, len(draws)), make([]float64, blocks), 0.0
+	for d, draw := range draws {
+		pseudo[d] = make([]float64, blocks)
+		for j := range blocks {
+			h := total / a.out.Layout.BlockWeights[j]
+			v := h*draw.full(row) - (h-1)*draw.deleted(j, row)
+			pseudo[d][j] = v
+			byDraw[d] += v / float64(blocks)
+			byBlock[j] += v / float64(len(draws))
+			all += v / float64(blocks*len(draws))
+		}
+	}
+	between, noise := 0.0, 0.0
+	for d := range draws {
+		between += (byDraw[d] - all) * (byDraw[d] - all) / float64(len(draws)-1)
+		for j := range blocks {
+			e := pseudo[d][j] - byDraw[d] - byBlock[j] + all
+			noise += e * e / float64((len(draws)-1)*(blocks-1))
+		}
+	}
+	return between - noise/float64(blocks)
 }
 
 // pValue tests independence. The statistic is the draw mean, uncorrected, in

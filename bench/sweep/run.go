@@ -18,7 +18,7 @@ import (
 const batchBytes = 192 << 20
 
 // cellGroups is the number of groups of cells that are left out in turn.
-const cellGroups = 8
+const cellGroups = 6
 
 // Request is a sweep to be run.
 type Request struct {
@@ -60,7 +60,7 @@ func Run(ctx context.Context, r Request) (*bench.Outcome, error) {
 	}
 	out := &bench.Outcome{ChanceSpikesPerS: 0}
 	batches := g.drawBatches()
-	g.total = len(p.blocks) * (2 + len(batches) + (len(p.layout.Sizes)+g.cellBatch()-1)/g.cellBatch())
+	g.total = len(p.blocks) * (2 + len(batches) + (g.cellSizes()+g.cellBatch()-1)/g.cellBatch())
 
 	pilot, err := g.pilot(ctx)
 	if err != nil {
@@ -242,7 +242,7 @@ func (g *engine) keep(ctx context.Context, out *bench.Outcome, jobs []*job) erro
 }
 
 // measureCells measures, size by size, how the information varies with the cells
-// that happened to be recorded.
+// that happened to be recorded, where the draws do not tell that already.
 func (g *engine) measureCells(ctx context.Context, out *bench.Outcome) error {
 	var jobs []*job
 	flush := func() error {
@@ -261,7 +261,7 @@ func (g *engine) measureCells(ctx context.Context, out *bench.Outcome) error {
 			draw = 0
 		}
 		groups := min(cellGroups, n)
-		if groups < 2 {
+		if groups < 2 || g.layout.CellsFromDraws(i) {
 			continue
 		}
 		jobs = append(jobs, g.deletionJob(g.store, g.order(draw), i, groups))
@@ -275,6 +275,17 @@ func (g *engine) measureCells(ctx context.Context, out *bench.Outcome) error {
 		return nil
 	}
 	return flush()
+}
+
+// cellSizes is the number of sizes that measureCells visits.
+func (g *engine) cellSizes() int {
+	sizes := 0
+	for i, n := range g.layout.Sizes {
+		if n > 1 && !g.layout.CellsFromDraws(i) {
+			sizes++
+		}
+	}
+	return sizes
 }
 
 // cellBatch is the number of sizes whose cells are measured side by side.

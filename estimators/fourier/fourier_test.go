@@ -85,6 +85,34 @@ func TestSpectrumAgainstGonum(t *testing.T) {
 	}
 }
 
+// The vector kernels give the same bits as the portable ones, for every power of
+// two from 2^4 to 2^16 and segments whose length is no multiple of the lanes.
+func TestVectorEqualsPortable(t *testing.T) {
+	if !vector {
+		t.Skip("this processor has no vector kernels")
+	}
+	defer func() { vector = true }()
+	for n := 16; n <= 1<<16; n *= 2 {
+		for _, length := range []int{n, n - 5} {
+			p := NewPlan(n)
+			a, b, w := noise(length, 1), noise(length, 2), noise(length, 3)
+			transform := func(on bool) Packed {
+				vector = on
+				z := dirty(p)
+				p.Pack(z, a, b, w, nil)
+				p.Forward(z)
+				return z
+			}
+			fast, slow := transform(true), transform(false)
+			for i := range n {
+				for _, at := range []int{i, n + gap + i} {
+					require.Equal(t, math.Float64bits(slow[at]), math.Float64bits(fast[at]), "n %d value %d", n, at)
+				}
+			}
+		}
+	}
+}
+
 func TestMisusePanics(t *testing.T) {
 	assert.PanicsWithValue(t, "fourier: length 24 is not a power of two of at least 16", func() { NewPlan(24) })
 	assert.Panics(t, func() { NewPlan(8) })

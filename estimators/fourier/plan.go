@@ -18,15 +18,15 @@ const gap = 8
 // shared between goroutines.
 type Plan struct {
 	n      int
-	stages []stage // from length n down to 4
+	pairs  []float64 // twiddles of the radix-2 pass; nil where n is a power of four
+	stages []stage   // radix-4 passes, from the longest down to blocks of 16
 }
 
-// stage holds the twiddles w^j, w^2j, w^3j, j < m/4, of one butterfly length m.
+// stage holds the twiddles of one radix-4 pass over blocks of 4·quarter values:
+// cosines and sines of w^j, then of w^2j and w^3j, quarter values each.
 type stage struct {
-	m      int
-	c1, s1 []float64
-	c2, s2 []float64
-	c3, s3 []float64
+	quarter  int
+	twiddles []float64
 }
 
 var plans sync.Map // int → *Plan
@@ -41,24 +41,31 @@ func NewPlan(n int) *Plan {
 		return p.(*Plan)
 	}
 	p := &Plan{n: n}
-	for m := n; m >= 4; m /= 4 {
-		q := m / 4
-		s := stage{m: m}
-		for k, pair := range []*[]float64{&s.c1, &s.s1, &s.c2, &s.s2, &s.c3, &s.s3} {
-			*pair = make([]float64, q)
-			for j := range q {
-				sin, cos := math.Sincos(-2 * math.Pi * float64((k/2+1)*j%m) / float64(m))
-				if k%2 == 0 {
-					(*pair)[j] = cos
-				} else {
-					(*pair)[j] = sin
-				}
-			}
-		}
-		p.stages = append(p.stages, s)
+	m := n
+	if bits.TrailingZeros(uint(n))%2 == 1 {
+		m /= 2
+		p.pairs = twiddles(n, m, 1)
+	}
+	for ; m >= 16; m /= 4 {
+		p.stages = append(p.stages, stage{quarter: m / 4, twiddles: twiddles(m, m/4, 3)})
 	}
 	kept, _ := plans.LoadOrStore(n, p)
 	return kept.(*Plan)
+}
+
+// twiddles are, for each power 1 … powers, count cosines and then count sines of
+// −2π power j/m.
+func twiddles(m, count, powers int) []float64 {
+	out := make([]float64, 0, 2*powers*count)
+	for power := 1; power <= powers; power++ {
+		for j := range count {
+			out = append(out, math.Cos(2*math.Pi*float64(power*j%m)/float64(m)))
+		}
+		for j := range count {
+			out = append(out, -math.Sin(2*math.Pi*float64(power*j%m)/float64(m)))
+		}
+	}
+	return out
 }
 
 // Len is the number of complex values.
@@ -89,10 +96,7 @@ func fill(dst, x, w []float64) {
 	if w == nil {
 		copy(dst, x)
 	} else {
-		w = w[:len(x)]
-		for i, v := range x {
-			dst[i] = v * w[i]
-		}
+		multiply(dst[:len(x)], x, w[:len(x)])
 	}
 	clear(dst[len(x):])
 }
@@ -100,65 +104,46 @@ func fill(dst, x, w []float64) {
 // Forward transforms z in place; the output is in digit-reversed order.
 func (p *Plan) Forward(z Packed) {
 	re, im := p.split(z)
-	p.forward(re, im, 0)
+	if p.pairs == nil {
+		p.forward(re, im, 0)
+		return
+	}
+	half := p.n / 2
+	radix2(re, im, p.pairs)
+	p.forward(re[:half], im[:half], 0)
+	p.forward(re[half:], im[half:], 0)
 }
 
-// depthFirst is the length above which a butterfly pass is followed by its
-// quarters one after another, so that each stays in the first-level cache.
+// depthFirst is the length above which a radix-4 pass is followed by its quarters
+// one after another, so that each stays in the first-level cache.
 const depthFirst = 1024
 
 func (p *Plan) forward(re, im []float64, level int) {
-	m := len(re)
-	if m > depthFirst {
-		butterflies(re, im, &p.stages[level])
-		for q := 0; q < m; q += m / 4 {
-			p.forward(re[q:q+m/4], im[q:q+m/4], level+1)
+	n := len(re)
+	if n > depthFirst {
+		radix4(re, im, &p.stages[level])
+		for q := 0; q < n; q += n / 4 {
+			p.forward(re[q:q+n/4], im[q:q+n/4], level+1)
 		}
 		return
 	}
-	length := m
-	for ; length >= 4; length /= 4 {
-		for at := 0; at < m; at += length {
-			butterflies(re[at:at+length], im[at:at+length], &p.stages[level])
-		}
-		level++
+	for ; level < len(p.stages)-1; level++ {
+		radix4(re, im, &p.stages[level])
 	}
-	if length == 2 {
-		for at := 0; at < m; at += 2 {
-			re[at], re[at+1] = re[at]+re[at+1], re[at]-re[at+1]
-			im[at], im[at+1] = im[at]+im[at+1], im[at]-im[at+1]
-		}
-	}
+	last16(re, im, p.stages[level].twiddles)
 }
 
-// butterflies is one radix-4 pass of decimation in frequency. Products are
-// wrapped in float64 so that no platform fuses them with the sum that follows:
-// the same bits everywhere.
-func butterflies(re, im []float64, s *stage) {
-	q := s.m / 4
-	r0, r1, r2, r3 := re[:q], re[q:2*q], re[2*q:3*q], re[3*q:4*q]
-	i0, i1, i2, i3 := im[:q], im[q:2*q], im[2*q:3*q], im[3*q:4*q]
-	c1, s1, c2, s2, c3, s3 := s.c1[:q], s.s1[:q], s.c2[:q], s.s2[:q], s.c3[:q], s.s3[:q]
-	for j := range q {
-		sumR, difR := r0[j]+r2[j], r0[j]-r2[j]
-		sumI, difI := i0[j]+i2[j], i0[j]-i2[j]
-		oddR, turnI := r1[j]+r3[j], r1[j]-r3[j]
-		oddI, turnR := i1[j]+i3[j], i1[j]-i3[j]
-		r0[j], i0[j] = sumR+oddR, sumI+oddI
-		// −i(b−d) has real part Im(b−d) and imaginary part −Re(b−d).
-		xr, xi := difR+turnR, difI-turnI
-		r1[j], i1[j] = float64(xr*c1[j])-float64(xi*s1[j]), float64(xr*s1[j])+float64(xi*c1[j])
-		xr, xi = sumR-oddR, sumI-oddI
-		r2[j], i2[j] = float64(xr*c2[j])-float64(xi*s2[j]), float64(xr*s2[j])+float64(xi*c2[j])
-		xr, xi = difR-turnR, difI+turnI
-		r3[j], i3[j] = float64(xr*c3[j])-float64(xi*s3[j]), float64(xr*s3[j])+float64(xi*c3[j])
+// position is where frequency k is left. Each pass sends frequencies k mod 4 (the
+// radix-2 pass: mod 2) to a quarter of their own; the last two passes leave their
+// 16 values in natural order.
+func (p *Plan) position(k int) int {
+	at, m := 0, p.n
+	if p.pairs != nil {
+		m /= 2
+		at += k % 2 * m
+		k /= 2
 	}
-}
-
-// position is where frequency k of a transform of length m is left.
-func position(k, m int) int {
-	at := 0
-	for m >= 4 {
+	for m > 16 {
 		m /= 4
 		at += k % 4 * m
 		k /= 4
@@ -180,8 +165,8 @@ func (p *Plan) Select(k0, k1 int) *Selection {
 	}
 	s := &Selection{n: p.n}
 	for k := k0; k < k1; k++ {
-		s.at = append(s.at, int32(position(k, p.n)))
-		s.mirror = append(s.mirror, int32(position((p.n-k)%p.n, p.n)))
+		s.at = append(s.at, int32(p.position(k)))
+		s.mirror = append(s.mirror, int32(p.position((p.n-k)%p.n)))
 	}
 	return s
 }
