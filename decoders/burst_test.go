@@ -68,6 +68,8 @@ func TestLabelExamples(t *testing.T) {
 		{"first interval too long", strict, []int64{0, 5, 9}, []decoders.Kind{1, 1, 1}},
 		{"no silence before", strict, []int64{0, 49, 52, 55}, []decoders.Kind{1, 1, 1, 1}},
 		{"silence of just the length", strict, []int64{0, 50, 53, 56}, []decoders.Kind{1, 3, 0, 0}},
+		{"a silence 1 ns longer than the limit is always there", decoders.BurstRule{MaxISI: 15 * ms, MinSilence: 15*ms + 1, MinSpikes: 2}, []int64{0, 16, 20}, []decoders.Kind{1, 2, 0}},
+		{"a longer one is not", decoders.BurstRule{MaxISI: 16*ms - 1, MinSilence: 16*ms + 1, MinSpikes: 2}, []int64{0, 16, 20}, []decoders.Kind{1, 1, 1}},
 		{"isolated spikes before a burst within the limit", decoders.BurstRule{MaxISI: 15 * ms, FirstISI: 4 * ms, MinSpikes: 2}, []int64{0, 10, 13, 28, 44}, []decoders.Kind{1, 3, 0, 0, 1}},
 	} {
 		t.Run(c.name, func(t *testing.T) {
@@ -87,10 +89,10 @@ func TestLabelAgreesWithSlowLabeller(t *testing.T) {
 			MinSilence: rapid.Int64Range(0, 20).Draw(t, "silence"),
 			MinSpikes:  rapid.IntRange(2, 6).Draw(t, "spikes"),
 		}
-		if rapid.Bool().Draw(t, "plain") {
-			rule.MinSilence, rule.MinSpikes = 0, 2
-		}
 		rule.FirstISI = rapid.Int64Range(0, rule.MaxISI).Draw(t, "first")
+		if rapid.Bool().Draw(t, "plain") { // or all but plain
+			rule.MinSilence, rule.MinSpikes, rule.FirstISI = rule.MaxISI+rapid.Int64Range(-1, 2).Draw(t, "more"), 2, 0
+		}
 		require.NoError(t, rule.Validate())
 		intervals := rapid.SliceOfN(rapid.Int64Range(0, 24), 0, 60).Draw(t, "intervals")
 		times := make([]int64, len(intervals))

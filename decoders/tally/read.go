@@ -139,24 +139,24 @@ type ratio struct {
 }
 
 // packed divides sums that fit the packed fields. Running sums are modulo 2⁶⁴,
-// in which differences are exact; the fields beside the events run over unread.
+// in which differences are exact; p̄ᵢEᵢ may run over, unread.
 func (r *ratio) packed(dst []float64, num, den weighing) {
 	prior, above, baseline := r.prior, r.above, r.baseline
 	out, in := r.words[:len(dst)], r.words[r.window-1:][:len(dst)]
 	var first, second uint64 // sums of the window but for its last bin
 	for _, w := range r.words[:r.window-1] {
-		first += w[0] &^ fieldMask
+		first += w[0]
 		second += w[1]
 	}
 	for i := range dst {
-		first += in[i][0] &^ fieldMask
+		first += in[i][0]
 		second += in[i][1]
 		x := baseline
 		if d := den.of(first, second) + prior; d > 0 {
 			x = (num.of(first, second) + above) / d
 		}
 		dst[i] = x
-		first -= out[i][0] &^ fieldMask
+		first -= out[i][0]
 		second -= out[i][1]
 	}
 }

@@ -4,18 +4,25 @@ import (
 	"fmt"
 	"math/bits"
 	"math/rand/v2"
+	"slices"
 
 	"codeassay/decoders"
 )
 
 // surrogate is the scratch of BurstFree.
 type surrogate struct {
-	owners []uint32 // unit of each event still to be given away
-	times  []int64  // ns from the block's start, unit by unit
-	first  []int    // place of each unit's first event
-	next   []int    // and of its next one
-	kinds  []decoders.Kind
+	owners  []uint32 // unit of each event still to be dealt out
+	moments []uint32 // unit by unit, bin and fraction of the bin of each event
+	parts   int      // bits of the fraction: what the bins leave of 32, up to finest
+	first   []int    // place of each unit's first event
+	next    []int    // and of its next one
+	times   []int64  // of one unit
+	kinds   []decoders.Kind
 }
+
+// finest is the most bits of a fraction of a bin: a millionth of it is fine
+// enough, and its product with any sensible width of bins fits 63 bits.
+const finest = 20
 
 // BurstFree fills the accumulator with a burst-free surrogate of the full
 // ensemble in one span: what the recording would look like if its events were
@@ -31,8 +38,9 @@ type surrogate struct {
 // p̄ is the one expected of a Poisson train with its event rate over the
 // recording (ChanceTotals).
 //
-// The same state of rng gives the same surrogate. Unless a rule looks further
-// than the halo, cutting the train off at the span's ends does not matter.
+// The same state of rng gives the same surrogate. Where a rule looks further than
+// the halo, spikes within that reach of the span's ends are labelled as at the
+// ends of a trial.
 func (s *Store) BurstFree(a *Accumulator, span int, rng *rand.Rand, rules []decoders.BurstRule) {
 	if len(rules) != len(s.totals) {
 		panic(fmt.Sprintf("tally: %d burst rules for %d units", len(rules), len(s.totals)))
@@ -40,17 +48,15 @@ func (s *Store) BurstFree(a *Accumulator, span int, rng *rand.Rand, rules []deco
 	a.Reset(span)
 	a.deal(rng)
 	clear(a.words)
+	f := &a.free
 	for unit := range rules {
-		times := a.free.times[a.free.first[unit]:a.free.next[unit]]
-		if len(times) == 0 {
-			continue
-		}
-		a.free.kinds = rules[unit].Label(a.free.kinds, times)
+		f.kinds = rules[unit].Label(f.kinds, f.timesOf(unit, s.binNs))
 		_, share := s.chance(unit, rules[unit], s.seconds)
 		by := increments(share)
-		for i, t := range times {
-			w := &a.words[s.divide.quotient(t)]
-			d := &by[a.free.kinds[i]&7]
+		moments := f.moments[f.first[unit]:f.next[unit]]
+		for i, kind := range f.kinds[:len(moments)] {
+			w := &a.words[moments[i]>>f.parts]
+			d := &by[kind&7]
 			w[0] += d[0]
 			w[1] += d[1]
 		}
@@ -58,7 +64,7 @@ func (s *Store) BurstFree(a *Accumulator, span int, rng *rand.Rand, rules []deco
 }
 
 // deal gives the block's events to its units at random. It leaves each unit's
-// times in order, and the number of events of each bin in the words.
+// moments in order, and the number of events of each bin in the words.
 func (a *Accumulator) deal(rng *rand.Rand) {
 	f, b := &a.free, a.block
 	f.owners, f.first = f.owners[:0], f.first[:0]
@@ -67,44 +73,71 @@ func (a *Accumulator) deal(rng *rand.Rand) {
 		for page := range b.pages() {
 			at := b.groups(page, unit)
 			words := a.words[page*pageBins:]
-			for _, bin := range b.spikes[at[1]:at[kindCount]] {
+			events := b.spikes[at[1]:at[kindCount]]
+			for _, bin := range events {
 				words[bin][0]++
-				f.owners = append(f.owners, uint32(unit))
+			}
+			have := len(f.owners)
+			f.owners = slices.Grow(f.owners, len(events))[:have+len(events)]
+			for i := range f.owners[have:] {
+				f.owners[have+i] = uint32(unit)
 			}
 		}
 	}
 	n := len(f.owners)
-	if cap(f.times) < n {
-		f.times = make([]int64, n+n/8)
+	if cap(f.moments) < n {
+		f.moments = make([]uint32, n+n/8)
 	}
-	f.times = f.times[:n]
+	f.moments = f.moments[:n]
+	f.parts = min(32-bits.Len(uint(len(a.words))), finest)
 	f.next = append(f.next[:0], f.first...)
 
 	// Bins in order, and for each event an owner drawn from those that remain
-	// (Durstenfeld 1964): every unit's times come out sorted but for events in
-	// one and the same bin.
-	owners, left := f.owners, 0
+	// (Durstenfeld 1964): every unit's moments come out in order but for those
+	// in one and the same bin.
+	owners, moments, next := f.owners, f.moments, f.next
+	parts := f.parts
+	left := 0
 	for bin := range a.words {
-		start := int64(bin) * a.store.binNs
 		for range a.words[bin][0] {
 			// One random word serves both draws: its product with the number
-			// that remain has the choice in the upper half and, to within 2⁻³²,
+			// that remains has the choice in the upper half and, to within 2⁻³²,
 			// an independent uniform fraction in the lower one.
 			choice, fraction := bits.Mul64(rng.Uint64(), uint64(n-left))
-			within, _ := bits.Mul64(fraction, uint64(a.store.binNs))
-			unit := owners[left+int(choice)]
-			owners[left+int(choice)] = owners[left]
+			chosen := &owners[left+int(choice)]
+			unit := *chosen
+			*chosen = owners[left]
 			left++
-
-			at := f.next[unit]
-			f.next[unit]++
-			t := start + int64(within)
-			for ; at > f.first[unit] && f.times[at-1] > t; at-- {
-				f.times[at] = f.times[at-1]
-			}
-			f.times[at] = t
+			moments[next[unit]] = uint32(bin)<<parts | uint32(fraction>>(64-parts))
+			next[unit]++
 		}
 	}
+	for unit := range f.first {
+		sortNearly(moments[f.first[unit]:next[unit]])
+	}
+}
+
+// sortNearly sorts what is all but sorted.
+func sortNearly(x []uint32) {
+	for i := 1; i < len(x); i++ {
+		v := x[i]
+		j := i
+		for ; j > 0 && x[j-1] > v; j-- {
+			x[j] = x[j-1]
+		}
+		x[j] = v
+	}
+}
+
+// timesOf are the surrogate's spikes of a unit in ns from the block's start.
+func (f *surrogate) timesOf(unit int, binNs int64) []int64 {
+	moments := f.moments[f.first[unit]:f.next[unit]]
+	f.times = f.times[:0]
+	for _, m := range moments {
+		within := int64(m&(1<<f.parts-1)) * binNs >> f.parts
+		f.times = append(f.times, int64(m>>f.parts)*binNs+within)
+	}
+	return f.times
 }
 
 // ChanceTotals are the counts to expect of a unit's burst-free surrogate over the

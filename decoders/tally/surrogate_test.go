@@ -39,7 +39,7 @@ func TestBurstFreeKeepsTheEventTrain(t *testing.T) {
 			require.Equal(t, n[1]+n[2]+n[3]+n[4], fields(free.words[bin])[0], "span %d, bin %d", i, bin)
 		}
 		for u := range 60 {
-			times := free.free.times[free.free.first[u]:free.free.next[u]]
+			times := free.free.timesOf(u, ms)
 			require.True(t, slices.IsSorted(times))
 			events := 0
 			for page := range data.block.pages() {

@@ -271,13 +271,13 @@ func TestFullBins(t *testing.T) {
 		f := &fake{trials: []scenarios.Trial{{Duration: 100 * ms}}}
 		for range n {
 			f.units = append(f.units, scenarios.Unit{})
-			f.trains = append(f.trains, []int64{42*ms + 1, 50 * ms}) // a burst: p̄ = 1
+			f.trains = append(f.trains, []int64{42*ms + 1, 50 * ms, 75 * ms}) // a burst and an isolated spike
 		}
 		return f
 	}
 	f := crowd(65535)
 	spans := []Span{{0, 10, 70}}
-	o := Options{BinNs: ms, HaloBins: 5, Workers: 2}
+	o := Options{BinNs: ms, HaloBins: 35, Workers: 2}
 	s := build(t, f, defaultRules(65535), spans, o)
 	a, some := s.NewAccumulator(), s.NewAccumulator()
 	a.Reset(0)
@@ -288,13 +288,15 @@ func TestFullBins(t *testing.T) {
 			some.Add(u)
 		}
 	}
-	for k, want := range [6][2]float64{{65535, 65535}, {}, {65535, 0}, {}, {}, {65535, 0}} {
+	for k, want := range [6][3]float64{{65535, 65535, 65535}, {0, 0, 65535}, {65535, 0, 0}, {}, {}, {65535 / 2.0, 0, 65535 / 2.0}} {
 		w := [6]float64{}
 		w[k] = 1
 		x := a.Linear(nil, w)
-		assert.Equal(t, want, [2]float64{x[32], x[40]}, "train %d", k)
+		assert.Equal(t, want, [3]float64{x[32], x[40], x[65]}, "train %d", k)
 	}
 	assert.Equal(t, (65535.0+8)/(65535+16), a.Ratio(nil, allBursts, allEvents, 11, 16, 0.5)[32])
+	assert.Equal(t, (65535.0+4)/(2*65535+16), a.Ratio(nil, allBursts, allEvents, 71, 16, 0.25)[50]) // bins 25 to 95
+	assert.Equal(t, []float64{2 * 65535}, a.Windows(nil, 70, allEvents))
 	a.Sub(some)
 	assert.Equal(t, 65535.0-21845, a.Linear(nil, [6]float64{0, 0, 1})[32])
 

@@ -1,0 +1,5 @@
+//go:build !linux
+
+package scenarios
+
+func adviseHuge[T any]([]T) {}
