@@ -3,6 +3,7 @@ package bench
 import (
 	"encoding/json"
 	"math"
+	"slices"
 
 	"codeassay/estimators"
 )
@@ -162,4 +163,40 @@ type TruthSummary struct {
 	RelativeError Number `json:"relative_error"` // of the truth itself
 	Rows          int    `json:"rows"`
 	Held          int    `json:"held"` // rows whose interval holds the truth
+}
+
+// MarkInputBandwidth says of every row that the streams were drawn with this
+// cut-off in Hz.
+func (d *Document) MarkInputBandwidth(hz float64) {
+	for i := range d.Rows {
+		d.Rows[i].InputBandwidthHz = Number(hz)
+	}
+	for i := range d.Joint {
+		d.Joint[i].InputBandwidthHz = Number(hz)
+	}
+	for i := range d.Chance {
+		d.Chance[i].InputBandwidthHz = Number(hz)
+	}
+	for i := range d.Spectra {
+		d.Spectra[i].InputBandwidthHz = Number(hz)
+	}
+}
+
+// Append adds the rows of a document of the same study, drawn with another input
+// bandwidth.
+func (d *Document) Append(o *Document) {
+	d.Rows = append(d.Rows, o.Rows...)
+	d.Joint = append(d.Joint, o.Joint...)
+	d.Chance = append(d.Chance, o.Chance...)
+	d.Spectra = append(d.Spectra, o.Spectra...)
+	for _, w := range o.Warnings {
+		if !slices.Contains(d.Warnings, w) {
+			d.Warnings = append(d.Warnings, w)
+		}
+	}
+	if d.Truth != nil && o.Truth != nil {
+		d.Truth.Rows += o.Truth.Rows
+		d.Truth.Held += o.Truth.Held
+		d.Truth.RelativeError = max(d.Truth.RelativeError, o.Truth.RelativeError)
+	}
 }

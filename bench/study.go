@@ -11,6 +11,9 @@ type Study struct {
 	Sweep     SweepPart     `toml:"sweep"`
 	Codes     []CodePart    `toml:"code"`
 	Estimate  EstimatePart  `toml:"estimate"`
+
+	file  string         // where it was read, "" for a study made in the program
+	lines map[string]int // line of every key given, by its path in dots
 }
 
 // RecordingPart names a scenario or the files of a recording.

@@ -35,6 +35,32 @@ type Truth struct {
 	// BurstShare is the scenario's baseline of bursts over events: what the
 	// residual subtracts of each event.
 	BurstShare float64
+
+	known map[bench.Band][]spectraAt
+}
+
+// spectraAt are the stated spectra at one frequency.
+type spectraAt struct {
+	private, shared [5][5]complex128
+	cross           [5][]complex128
+	streams         [][]complex128
+}
+
+// over returns the spectra at the middles of a band's cells, once for all rows.
+func (t *Truth) over(band bench.Band) []spectraAt {
+	if at, ok := t.known[band]; ok {
+		return at
+	}
+	at := make([]spectraAt, truthCells)
+	for i := range at {
+		f := band.Low + (float64(i)+0.5)*(band.High-band.Low)/truthCells
+		at[i] = spectraAt{t.Spectra.Private(f), t.Spectra.Shared(f), t.Spectra.Cross(f), t.Spectra.Streams(f)}
+	}
+	if t.known == nil {
+		t.known = map[bench.Band][]spectraAt{}
+	}
+	t.known[band] = at
+	return at
 }
 
 // truthCells is the number of frequency cells that a band is integrated over;
@@ -81,15 +107,15 @@ func (t *Truth) Rate(codes [][5]float64, cells int, band bench.Band, stream int,
 	sum := 0.0
 	width := (band.High - band.Low) / truthCells
 	m := spectral.NewMatrix(len(t.Spectra.Streams(0)) + len(codes))
-	for i := range truthCells {
-		f := band.Low + (float64(i)+0.5)*width
-		sum += width * t.nats(m, codes, cells, f, stream, partial)
+	for _, at := range t.over(band) {
+		sum += width * at.nats(m, codes, cells, stream, partial)
 	}
 	return bench.Number(sum / ln2)
 }
 
-func (t *Truth) nats(m *spectral.Matrix, codes [][5]float64, cells int, f float64, stream int, partial bool) float64 {
-	streams := t.Spectra.Streams(f)
+// nats is the information at one frequency.
+func (at spectraAt) nats(m *spectral.Matrix, codes [][5]float64, cells, stream int, partial bool) float64 {
+	streams := at.streams
 	var order []int
 	if stream >= 0 {
 		if real(streams[stream][stream]) == 0 {
@@ -102,7 +128,6 @@ func (t *Truth) nats(m *spectral.Matrix, codes [][5]float64, cells int, f float6
 			order = append(order, s)
 		}
 	}
-	private, shared, cross := t.Spectra.Private(f), t.Spectra.Shared(f), t.Spectra.Cross(f)
 	n := float64(cells)
 	m.Resize(len(order) + len(codes))
 	for i, s := range order {
@@ -115,7 +140,7 @@ func (t *Truth) nats(m *spectral.Matrix, codes [][5]float64, cells int, f float6
 		for i, s := range order {
 			c := complex(0, 0)
 			for k := range w {
-				c += complex(n*w[k], 0) * cross[k][s]
+				c += complex(n*w[k], 0) * at.cross[k][s]
 			}
 			m.Set(row, i, c)
 		}
@@ -123,7 +148,7 @@ func (t *Truth) nats(m *spectral.Matrix, codes [][5]float64, cells int, f float6
 			c := complex(0, 0)
 			for k := range w {
 				for l := range v {
-					c += complex(w[k]*v[l], 0) * (complex(n, 0)*private[k][l] + complex(n*n, 0)*shared[k][l])
+					c += complex(w[k]*v[l], 0) * (complex(n, 0)*at.private[k][l] + complex(n*n, 0)*at.shared[k][l])
 				}
 			}
 			m.Set(row, len(order)+b, c)

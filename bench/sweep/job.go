@@ -15,6 +15,7 @@ type snapshot struct {
 
 	sums    [][]sums      // method, block
 	windows [][][]float64 // window plan, code, window
+	drift   []float64     // of the pilot: spikes by stretch of the recording
 }
 
 // jobKind says how a job visits a span.

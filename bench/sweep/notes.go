@@ -3,10 +3,62 @@ package sweep
 import (
 	"fmt"
 	"math"
+	"slices"
 
 	"codeassay/bench"
 	"codeassay/estimators"
+	"codeassay/estimators/stationarity"
 )
+
+// layDrift cuts spans into stretches, each much longer than the streams'
+// correlation times, in which spikes are counted to look for drift.
+func (p *plan) layDrift() {
+	slowest := math.Inf(1)
+	for _, b := range p.settings.Chosen.Bands {
+		slowest = math.Min(slowest, b.High)
+	}
+	p.driftBins = int(math.Ceil(math.Max(1, 5/slowest) / p.bin))
+	for _, span := range p.spans {
+		p.driftFirst = append(p.driftFirst, p.stretches)
+		p.stretches += span.Bins / p.driftBins
+	}
+}
+
+// noteDrift says when the ensemble's rate changes over the recording.
+func (g *engine) noteDrift(counts []float64) {
+	change := stationarity.Drift(counts)
+	if !(change.PValue < 0.001) {
+		return
+	}
+	low, high := slices.Min(change.Blocks), slices.Max(change.Blocks)
+	seconds := float64(g.driftBins) * g.bin
+	g.warnings = append(g.warnings, estimators.Warning{Severity: estimators.Weak, About: "rate",
+		Text: fmt.Sprintf("the ensemble's rate is not steady: between tenths of the recording it ranges from %.4g to %.4g spikes/s (p = %.2g); a drift adds slow power that no stream explains, and intervals that assume a steady recording are too narrow",
+			low/seconds, high/seconds, change.PValue),
+		Remedy: "a steady stretch of the recording, or a band that begins above 0 Hz"})
+}
+
+// noteStreams says when a stream is not Gaussian or not steady.
+func (p *plan) noteStreams() {
+	for s, trials := range p.streams {
+		if p.frozen {
+			trials = trials[:1]
+		}
+		x := slices.Concat(trials...)
+		name := p.layout.Streams[s]
+		if shape := stationarity.Gaussianity(x); shape.Visible() {
+			p.warnings = append(p.warnings, estimators.Warning{Severity: estimators.Weak, About: name,
+				Text: fmt.Sprintf("the stream is not Gaussian (skewness %.2f, excess kurtosis %.2f): the coherence rate is then no lower bound on the information about it, only what a linear reader of a Gaussian stream with this spectrum would have",
+					shape.Skewness, shape.ExcessKurtosis),
+				Remedy: "read the plug-in rows beside it, or drive with a Gaussian stream"})
+		}
+		if change := stationarity.StreamDrift(x); change.PValue < 0.001 {
+			p.warnings = append(p.warnings, estimators.Warning{Severity: estimators.Weak, About: name,
+				Text:   fmt.Sprintf("the stream is not steady: its level changes over the recording (p = %.2g), so one spectrum does not describe it and intervals are too narrow", change.PValue),
+				Remedy: "a steady stretch of the recording, or a band that begins above 0 Hz"})
+		}
+	}
+}
 
 // notePower says where frequencies were left out because a stream has next to no
 // power there.
@@ -76,13 +128,12 @@ func (g *engine) noteChance(out *bench.Outcome) {
 			continue
 		}
 		code := g.codes.codes[key.Code]
-		if code.Spikes || code.Weights[0] != 0 {
-			continue // not a code of bursts
+		if code.Linear() && !code.OwnBaseline {
+			continue // a plain rate follows the event rate by its nature
 		}
-		info := g.layout.Info[row]
 		value, chance := out.Pieces[full].Value[0].Full[row], out.Chance.Full[row]
-		threshold := 4 * math.Sqrt(info.NullVar) / math.Ln2
-		if chance < threshold || value > chance {
+		threshold := 4 * math.Sqrt(g.layout.Info[row].NullVar) / math.Ln2
+		if chance < threshold || value < threshold || value > 1.2*chance {
 			continue
 		}
 		out.Warnings = append(out.Warnings, estimators.Warning{Severity: estimators.Weak, About: code.Name,

@@ -45,7 +45,11 @@ type plan struct {
 	halo    int
 
 	windows []windowPlan // one a band that the plug-in family uses
-	masks   [][][]bool   // method, stream, bin: enough power to be used
+
+	driftBins  int   // of a stretch in which spikes are counted to look for drift
+	driftFirst []int // by span: index of its first stretch
+	stretches  int
+	masks      [][][]bool // method, stream, bin: enough power to be used
 
 	rowCells []rowCells // by row of the layout; empty for windows
 }
@@ -86,6 +90,8 @@ func newPlan(study bench.Study, visible []decoders.Code, pairs [][2]int, src Sou
 		return nil, err
 	}
 	p.layRows()
+	p.layDrift()
+	p.noteStreams()
 	p.notePower()
 	p.noteSampling()
 	p.noteFrozen()

@@ -67,6 +67,7 @@ func Run(ctx context.Context, r Request) (*bench.Outcome, error) {
 		return nil, err
 	}
 	out.Spectra = g.spectra(&pilot.snapshots[0])
+	g.noteDrift(pilot.snapshots[0].drift)
 	if pilot.draw == 0 { // a piece of its own; of a smaller ensemble draw 1 measures it again
 		if err := g.keep(ctx, out, []*job{pilot}); err != nil {
 			return nil, err
@@ -146,6 +147,7 @@ func (g *engine) pilot(ctx context.Context) (*job, error) {
 			return nil, err
 		}
 		j := g.nestedJob(g.store, draw, g.order(draw), []int{last})
+		j.snapshots[0].drift = make([]float64, g.stretches)
 		if err := g.run(ctx, []*job{j}); err != nil {
 			return nil, err
 		}
@@ -342,7 +344,7 @@ func (g *engine) describe(out *bench.Outcome) {
 	for u := range g.layout.Cells {
 		t := g.store.Totals(u)
 		counts = counts.Add(t)
-		chance += t.EventCount() * decoders.ChanceBurstFraction(t.EventCount()/seconds, g.rules[u].MaxISI)
+		chance += chanceBursts(g.rules[u].ChanceEvents(t.EventCount()/seconds)) * t.EventCount()
 	}
 	trains := counts.Trains()
 	events := counts.EventCount()
@@ -370,6 +372,15 @@ func (g *engine) describe(out *bench.Outcome) {
 		out.Warnings = append(out.Warnings, estimators.Warning{Severity: estimators.Weak, About: "recording",
 			Text: "there are no spikes in the recording", Remedy: "check the files"})
 	}
+}
+
+// chanceBursts is the share of bursts among events, by their sizes.
+func chanceBursts(events [4]float64) float64 {
+	bursts := events[1] + events[2] + events[3]
+	if bursts == 0 {
+		return 0
+	}
+	return bursts / (events[0] + bursts)
 }
 
 func ratio(a, b float64) bench.Number {

@@ -4,6 +4,7 @@ import (
 	"math"
 	"math/rand/v2"
 
+	"codeassay/decoders"
 	"codeassay/decoders/tally"
 	"codeassay/estimators/spectral"
 )
@@ -172,6 +173,15 @@ func (w *worker) take(block, span int, acc *tally.Accumulator, snap *snapshot) {
 	for e, m := range p.methods {
 		if m.info.Spectral {
 			w.addSpectra(e, block, span, snap)
+		}
+	}
+	if snap.drift != nil {
+		acc.Linear(signal, [decoders.Trains]float64{1})
+		first := p.driftFirst[span]
+		for i := range bins / p.driftBins {
+			for _, v := range signal[i*p.driftBins : (i+1)*p.driftBins] {
+				snap.drift[first+i] += v
+			}
 		}
 	}
 }

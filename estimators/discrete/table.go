@@ -2,67 +2,93 @@ package discrete
 
 import "fmt"
 
-// Table is a joint table of counts, row levels by column levels. Counts are
-// whole numbers, so tables of blocks add and subtract exactly.
+// Table holds joint counts: rows are the levels of a stream, columns those of a
+// response. Tables of the same shape add and subtract, so that leaving a block
+// of samples out is one subtraction.
 type Table struct {
 	rows, columns int
-	counts        []int64
+	counts        []int64 // row by row
 }
 
-// NewTable is an empty table.
+// NewTable is an empty table. It panics unless both sides are positive.
 func NewTable(rows, columns int) *Table {
+	if rows < 1 || columns < 1 {
+		panic(fmt.Sprintf("discrete: a table of %d × %d levels; each side needs at least 1", rows, columns))
+	}
 	return &Table{rows: rows, columns: columns, counts: make([]int64, rows*columns)}
 }
 
 // FromCounts is a table of the given counts, row by row. It panics where rows
-// differ in length or a count is negative.
+// differ in length, a count is negative, or there are none.
 func FromCounts(counts [][]int64) *Table {
+	if len(counts) == 0 {
+		panic("discrete: a table without rows")
+	}
 	t := NewTable(len(counts), len(counts[0]))
-	for i, row := range counts {
+	for r, row := range counts {
 		if len(row) != t.columns {
-			panic("discrete: rows of a table differ in length")
+			panic(fmt.Sprintf("discrete: row %d has %d counts, the first one %d", r, len(row), t.columns))
 		}
-		for j, n := range row {
+		copy(t.row(r), row)
+		for _, n := range row {
 			if n < 0 {
-				panic("discrete: a negative count")
+				panic(fmt.Sprintf("discrete: row %d has a negative count", r))
 			}
-			t.counts[i*t.columns+j] = n
 		}
 	}
 	return t
 }
 
-// Rows is the number of row levels.
+// Rows is the number of stream levels, used or not.
 func (t *Table) Rows() int { return t.rows }
 
-// Columns is the number of column levels.
+// Columns is the number of response levels, used or not.
 func (t *Table) Columns() int { return t.columns }
 
-// Count is the count of one cell.
-func (t *Table) Count(row, column int) int64 { return t.counts[row*t.columns+column] }
-
-// Samples is the sum of all counts.
-func (t *Table) Samples() int64 {
-	n := int64(0)
-	for _, c := range t.counts {
-		n += c
+// Count is the number of samples of a stream level with a response level.
+func (t *Table) Count(row, column int) int64 {
+	if uint(column) >= uint(t.columns) {
+		panic(fmt.Sprintf("discrete: column %d of a table with %d", column, t.columns))
 	}
-	return n
+	return t.counts[row*t.columns+column]
 }
 
-// SamplesPerCell is the number of samples over the number of cells: below four
-// no correction can be trusted, at eight the jackknife is good to about 1 %.
-func (t *Table) SamplesPerCell() float64 { return float64(t.Samples()) / float64(len(t.counts)) }
-
-// Clone is a copy.
-func (t *Table) Clone() *Table {
-	return &Table{t.rows, t.columns, append([]int64(nil), t.counts...)}
+// Samples is the number of samples counted.
+func (t *Table) Samples() int64 {
+	sum := int64(0)
+	for _, n := range t.counts {
+		sum += n
+	}
+	return sum
 }
 
-// Reset clears all counts.
-func (t *Table) Reset() { clear(t.counts) }
+// RowCounts are the stream's counts whatever the response; a nil dst is allocated.
+func (t *Table) RowCounts(dst []int64) []int64 {
+	dst = sized(dst, t.rows)
+	for r := range dst {
+		sum := int64(0)
+		for _, n := range t.row(r) {
+			sum += n
+		}
+		dst[r] = sum
+	}
+	return dst
+}
 
-// Add adds the counts of o, a table of the same shape.
+// ColumnCounts are the response's counts whatever the stream; a nil dst is
+// allocated.
+func (t *Table) ColumnCounts(dst []int64) []int64 {
+	dst = sized(dst, t.columns)
+	clear(dst)
+	for r := range t.rows {
+		for c, n := range t.row(r) {
+			dst[c] += n
+		}
+	}
+	return dst
+}
+
+// Add adds the counts of a table of the same shape.
 func (t *Table) Add(o *Table) {
 	t.mustMatch(o)
 	for i, n := range o.counts {
@@ -70,49 +96,40 @@ func (t *Table) Add(o *Table) {
 	}
 }
 
-// Subtract takes away the counts of o, a part of t.
+// Subtract takes away the counts of a table of the same shape. It panics where
+// more is taken than is there: o was then never part of t.
 func (t *Table) Subtract(o *Table) {
 	t.mustMatch(o)
 	for i, n := range o.counts {
-		if t.counts[i] -= n; t.counts[i] < 0 {
-			panic("discrete: subtracting a table that is not a part")
+		if n > t.counts[i] {
+			panic("discrete: subtracting counts that the table does not hold")
 		}
+		t.counts[i] -= n
 	}
 }
+
+// Clone is a copy that shares nothing with t.
+func (t *Table) Clone() *Table {
+	return &Table{rows: t.rows, columns: t.columns, counts: append([]int64(nil), t.counts...)}
+}
+
+// Reset empties the table for reuse.
+func (t *Table) Reset() { clear(t.counts) }
+
+func (t *Table) row(r int) []int64 { return t.counts[r*t.columns : (r+1)*t.columns] }
 
 func (t *Table) mustMatch(o *Table) {
 	if t.rows != o.rows || t.columns != o.columns {
-		panic(fmt.Sprintf("discrete: tables of %d×%d and %d×%d", t.rows, t.columns, o.rows, o.columns))
+		panic(fmt.Sprintf("discrete: tables of %d × %d and %d × %d do not combine", t.rows, t.columns, o.rows, o.columns))
 	}
 }
 
-// Tabulate counts pairs of levels: rows[i] with columns[i].
-func Tabulate(t *Table, rows, columns []uint8) { TabulateShifted(t, rows, columns, 0) }
-
-// TabulateShifted counts pairs with the columns shifted around a circle:
-// rows[i] with columns[(i+shift) mod n]. shift lies in [0, n).
-func TabulateShifted(t *Table, rows, columns []uint8, shift int) {
-	if len(rows) != len(columns) {
-		panic("discrete: levels of unequal length")
+func sized(dst []int64, n int) []int64 {
+	if dst == nil {
+		return make([]int64, n)
 	}
-	cut := len(rows) - shift
-	t.tabulate(rows[:cut], columns[shift:])
-	t.tabulate(rows[cut:], columns[:shift])
-}
-
-func (t *Table) tabulate(rows, columns []uint8) {
-	columns = columns[:len(rows)]
-	for i, r := range rows {
-		t.counts[int(r)*t.columns+int(columns[i])]++
+	if len(dst) != n {
+		panic(fmt.Sprintf("discrete: dst has %d values; %d are needed", len(dst), n))
 	}
-}
-
-// marginals are the sums over columns and over rows.
-func (t *Table) marginals() (rows, columns []int64) {
-	rows, columns = make([]int64, t.rows), make([]int64, t.columns)
-	for i, n := range t.counts {
-		rows[i/t.columns] += n
-		columns[i%t.columns] += n
-	}
-	return rows, columns
+	return dst
 }

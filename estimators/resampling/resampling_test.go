@@ -1,6 +1,7 @@
 package resampling
 
 import (
+	"fmt"
 	"math"
 	"math/rand/v2"
 	"slices"
@@ -54,30 +55,65 @@ func TestJackknifeUnequalGroups(t *testing.T) {
 	assert.InDelta(t, 1.0/34, mean, 4*math.Sqrt((sum2/runs-mean*mean)/runs))
 	assert.Panics(t, func() { Jackknife(1, []float64{1}, nil) })
 	assert.Panics(t, func() { Jackknife(1, []float64{1, 2}, []float64{1}) })
+	assert.Panics(t, func() { Jackknife(1, []float64{1, 2}, []float64{1, 0}) })
+}
+
+// A bias of order 1/N, that of the variance with divisor N, is removed whole.
+func TestJackknifeRemovesBiasOfOrderOneOverN(t *testing.T) {
+	x := []float64{2, 7, 1, 8, 2, 8, 1, 8, 2, 8}
+	spread := func(x []float64) (v float64) {
+		mean := 0.0
+		for _, a := range x {
+			mean += a / float64(len(x))
+		}
+		for _, a := range x {
+			v += (a - mean) * (a - mean) / float64(len(x))
+		}
+		return v
+	}
+	var deleted []float64
+	for i := range x {
+		deleted = append(deleted, spread(slices.Delete(slices.Clone(x), i, i+1)))
+	}
+	_, corrected := Jackknife(spread(x), deleted, nil)
+	assert.InDelta(t, spread(x)*10/9, corrected, 1e-12)
+	_, corrected = Jackknife(spread(x), deleted, []float64{3, 3, 3, 3, 3, 3, 3, 3, 3, 3})
+	assert.InDelta(t, spread(x)*10/9, corrected, 1e-12)
 }
 
 func TestTInterval(t *testing.T) {
 	low, high := TInterval(10, 4, 9, 0.95) // t₉ .975 = 2.262157 (tables)
 	assert.InDelta(t, 10-2*2.262157, low, 1e-5)
 	assert.InDelta(t, 10+2*2.262157, high, 1e-5)
+	low, high = TInterval(10, 0, 9, 0.95)
+	assert.Equal(t, [2]float64{10, 10}, [2]float64{low, high})
+	assert.Panics(t, func() { TInterval(10, -1, 9, 0.95) })
+	assert.Panics(t, func() { TInterval(10, 1, 0, 0.95) })
+	assert.Panics(t, func() { TInterval(10, 1, 9, 95) })
 }
 
-// Künsch 1989 on (1, 2, 3, 10) with blocks of 2: mean of resampled means 3.5,
-// variance 7/3; 4 standard errors over 20 000 resamples.
+// Künsch 1989 on (1, 2, 3, 10) with blocks of 2: a resample's mean is that of two
+// of the block means 1.5, 2.5, 6.5, so their mean is 3.5, their variance 7/3 and
+// their fourth central moment (2⁴+1⁴+3⁴)/3/8 + 6 (14/3)²/16 = 12.25. 4 standard
+// errors over 20 000 resamples.
 func TestMovingBlocks(t *testing.T) {
 	x := []float64{1, 2, 3, 10}
 	mean := func(s []float64) float64 { return (s[0] + s[1] + s[2] + s[3]) / 4 }
-	draws := MovingBlocks(rand.New(rand.NewPCG(2, 2)), x, 2, 20000, mean)
+	const runs = 20000
+	draws := MovingBlocks(rand.New(rand.NewPCG(2, 2)), x, 2, runs, mean)
 	m, v := 0.0, 0.0
 	for _, d := range draws {
-		m += d / 20000
+		m += d / runs
 	}
 	for _, d := range draws {
-		v += (d - m) * (d - m) / 20000
+		v += (d - m) * (d - m) / runs
 	}
-	assert.InDelta(t, 3.5, m, 4*math.Sqrt(7.0/3/20000))
-	assert.InDelta(t, 7.0/3, v, 0.12)
+	assert.InDelta(t, 3.5, m, 4*math.Sqrt(7.0/3/runs))
+	assert.InDelta(t, 7.0/3, v, 4*math.Sqrt((12.25-49.0/9)/runs))
 	assert.Equal(t, []float64{1, 2, 3, 10}, x)
+	whole := MovingBlocks(rand.New(rand.NewPCG(2, 2)), x, 4, 3, mean)
+	assert.Equal(t, []float64{4, 4, 4}, whole)
+	assert.Panics(t, func() { MovingBlocks(rand.New(rand.NewPCG(2, 2)), x, 5, 3, mean) })
 }
 
 // The worked example of Benjamini and Hochberg 1995 (15 p-values): BH rejects 4,
@@ -100,6 +136,9 @@ func TestAdjustments(t *testing.T) {
 	}
 	assert.Equal(t, 4, count(bh))
 	assert.Equal(t, 3, count(holm))
+	assert.Empty(t, Holm(nil))
+	assert.Panics(t, func() { Holm([]float64{.1, math.NaN()}) })
+	assert.Panics(t, func() { BenjaminiHochberg([]float64{math.NaN()}) })
 }
 
 // Piepho 2004: pairs 1–3, 1–4, 2–4 differ: a, ab, bc, c.
@@ -113,6 +152,25 @@ func TestLettersWorkedExample(t *testing.T) {
 	assert.Equal(t, "az", letter(51))
 }
 
+// Three outer items, each not different from two of three inner ones: the inner
+// triangle is a column of its own, but every pair in it is held by another.
+func TestLettersSweepOutWhatNoPairNeeds(t *testing.T) {
+	alike := map[[2]int]bool{{0, 1}: true, {0, 2}: true, {1, 2}: true, // inner
+		{0, 3}: true, {1, 3}: true, {1, 4}: true, {2, 4}: true, {0, 5}: true, {2, 5}: true}
+	got := Letters(6, func(i, j int) bool { return !alike[[2]int{min(i, j), max(i, j)}] })
+	assert.Equal(t, []string{"ab", "ac", "bc", "a", "c", "b"}, got)
+}
+
+func TestLettersManyGroups(t *testing.T) {
+	got := Letters(30, func(i, j int) bool { return true })
+	assert.Equal(t, "a", got[0])
+	assert.Equal(t, "z", got[25])
+	assert.Equal(t, []string{"aa", "ab", "ac", "ad"}, got[26:])
+	assert.Equal(t, []string{"a", "a", "a"}, Letters(3, func(i, j int) bool { return false }))
+}
+
+// Two items share a letter exactly where they are not different, no letter can be
+// taken from any item, and item 0 has "a".
 func TestLettersShareExactlyWhereNotDifferent(t *testing.T) {
 	rapid.Check(t, func(t *rapid.T) {
 		n := rapid.IntRange(1, 8).Draw(t, "n")
@@ -123,14 +181,32 @@ func TestLettersShareExactlyWhereNotDifferent(t *testing.T) {
 			}
 		}
 		different := func(i, j int) bool { return differ[max(i, j)*n+min(i, j)] }
+		wrong := func(letters []string) string {
+			for i := range n {
+				if letters[i] == "" {
+					return "an item without a letter"
+				}
+				for j := range i {
+					if strings.ContainsAny(letters[i], letters[j]) == different(i, j) {
+						return fmt.Sprintf("items %d and %d, different %v", i, j, different(i, j))
+					}
+				}
+			}
+			return ""
+		}
 		got := Letters(n, different)
-		if !strings.Contains(got[0], "a") {
+		if fault := wrong(got); fault != "" {
+			t.Fatalf("%q: %s", got, fault)
+		}
+		if !strings.HasPrefix(got[0], "a") {
 			t.Fatalf("item 0 has %q", got[0])
 		}
-		for i := range n {
-			for j := range i {
-				if strings.ContainsAny(got[i], got[j]) == different(i, j) {
-					t.Fatalf("items %d %q and %d %q, different %v", i, got[i], j, got[j], different(i, j))
+		for i, letters := range got {
+			for _, l := range letters {
+				less := slices.Clone(got)
+				less[i] = strings.ReplaceAll(letters, string(l), "")
+				if wrong(less) == "" {
+					t.Fatalf("%q: item %d does not need %q", got, i, l)
 				}
 			}
 		}
@@ -147,14 +223,19 @@ func TestGammaTail(t *testing.T) {
 	assert.Equal(t, 1.0, GammaTail(-3, 1, 1))
 	assert.Equal(t, 1e-300, GammaTail(1e6, 1, 1))
 	assert.InEpsilon(t, distuv.Gamma{Alpha: 4, Beta: 2}.Survival(5), GammaTail(5, 2, 1), 1e-9)
+	assert.Equal(t, 1e-300, GammaTail(math.Inf(1), 2, 1))
 	assert.Panics(t, func() { GammaTail(1, 0, 1) })
+	assert.Panics(t, func() { GammaTail(1, 1, 0) })
 }
 
-// b = 0 of m = 999 gives .001 (Phipson and Smyth 2010); 1000 samples with lags
-// beyond 50 leave 899 shifts.
+// b = 0 of m = 999 gives .001, 4 of 99 .05 (Phipson and Smyth 2010); 1000 samples
+// with lags beyond 50 leave 899 shifts.
 func TestMonteCarlo(t *testing.T) {
 	assert.InDelta(t, .001, MonteCarloP(1, make([]float64, 999)), 1e-15)
 	assert.InDelta(t, 1.0, MonteCarloP(0, make([]float64, 9)), 1e-15, "ties count")
+	null := make([]float64, 99)
+	copy(null, []float64{1, 2, 3, 4})
+	assert.InDelta(t, .05, MonteCarloP(1, null), 1e-15)
 	lags := Shifts(rand.New(rand.NewPCG(4, 4)), 1000, 50, 5000)
 	assert.Len(t, lags, 899)
 	slices.Sort(lags)
@@ -162,6 +243,8 @@ func TestMonteCarlo(t *testing.T) {
 	assert.Equal(t, 949, lags[898])
 	assert.Len(t, slices.Compact(lags), 899)
 	assert.Empty(t, Shifts(rand.New(rand.NewPCG(4, 4)), 10, 5, 3))
+	assert.Len(t, Shifts(rand.New(rand.NewPCG(4, 4)), 1000, 50, 80), 80)
+	assert.Panics(t, func() { Shifts(rand.New(rand.NewPCG(4, 4)), 10, -1, 3) })
 }
 
 // Newcombe 1998, Stat. Med. 17:857–872, Table I.
@@ -182,4 +265,7 @@ func TestBinomialIntervals(t *testing.T) {
 		assert.InDelta(t, c.exact[0], low, 5e-5)
 		assert.InDelta(t, c.exact[1], high, 5e-5)
 	}
+	assert.Panics(t, func() { Wilson(0, 0, .95) })
+	assert.Panics(t, func() { ClopperPearson(3, 2, .95) })
+	assert.Panics(t, func() { Wilson(1, 2, 95) })
 }

@@ -16,7 +16,8 @@ type Seed struct{ hi, lo uint64 }
 // New is the root seed of a study.
 func New(n uint64) Seed { return Seed{lo: n}.Child("codeassay") }
 
-// Child is the seed of a named part, and of the part's index-th instance.
+// Child is the seed of a named part, and of the part's index-th instance: a hash
+// (FNV-1a, 128 bits) of the parent, the name and the indices.
 func (s Seed) Child(name string, index ...int) Seed {
 	h := fnv.New128a()
 	var word [8]byte
@@ -36,10 +37,11 @@ func (s Seed) Child(name string, index ...int) Seed {
 }
 
 // Rand is a fresh generator at the seed's start: PCG of 128 bits (O'Neill 2014,
-// Harvey Mudd College HMC-CS-2014-0905).
+// Harvey Mudd College HMC-CS-2014-0905). Every call starts anew.
 func (s Seed) Rand() *rand.Rand { return rand.New(rand.NewPCG(s.hi, s.lo)) }
 
-// Perm fills dst with a random permutation of 0 … n−1; a nil dst is allocated.
+// Perm fills dst with a random permutation of 0 … n−1; a nil dst is allocated. It
+// panics if dst has another length.
 func (s Seed) Perm(dst []int, n int) []int {
 	if dst == nil {
 		dst = make([]int, n)

@@ -30,7 +30,7 @@ func npy(header string, elements any) []byte {
 	return b.Bytes()
 }
 
-func vector(descr string, n int, elements any) []byte {
+func vector(descr string, n int64, elements any) []byte {
 	return npy(fmt.Sprintf("{'descr': '%s', 'fortran_order': False, 'shape': (%d,), }\n", descr, n), elements)
 }
 

@@ -16,7 +16,7 @@ import (
 // Settings of the scenario paired-drive. Zero values stand for the defaults.
 type Settings struct {
 	Cells        int        // 1024
-	DurationS    float64    // 600
+	DurationS    float64    // 300
 	EventRateHz  float64    // events a second of each cell; 6
 	EventDepth   float64    // relative modulation of the hazard by one standard deviation of soma; 0.25
 	BurstShare   float64    // share of events that are bursts; 0.25
@@ -47,7 +47,7 @@ func (s Settings) withDefaults() Settings {
 	if s.Cells == 0 {
 		s.Cells = 1024
 	}
-	def(&s.DurationS, 600)
+	def(&s.DurationS, 300)
 	def(&s.EventRateHz, 6)
 	def(&s.EventDepth, 0.25)
 	def(&s.BurstShare, 0.25)

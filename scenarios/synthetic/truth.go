@@ -64,10 +64,10 @@ func (p *PairedDrive) Truth() *Truth {
 	t.solveResponse()
 	r0 := s.EventRateHz
 	t.rate = r0 * (1 - t.hazard*t.a*t.a*t.meanProduct/(1+t.hazard*t.dead))
-	// What is left out is of the order of the squares of what is carried: the
-	// gain's and the rate's second-order terms, and the rectified tail.
-	second := t.hazard * t.a * t.a * t.meanProduct
-	t.error = math.Max(0.002, 4*second*second+0.1*t.a*t.a*t.hazard*t.dead)
+	// Measured on 60 recordings of 256 cells × 300 s, and 30 of 1024, at a = 0.25:
+	// rates off by up to 0.8 %, weak cross-talk by up to 2.5 %. What is left out
+	// grows as a².
+	t.error = 0.005 + 0.16*t.a*t.a
 	return t
 }
 
@@ -302,8 +302,9 @@ func (t *Truth) Streams(f float64) [][]complex128 {
 	return [][]complex128{{complex(t.density(0, f), 0), 0}, {0, complex(t.density(1, f), 0)}}
 }
 
-// RelativeError is the size, relative to a rate in bits/s, of the terms that the
-// closed form leaves out: measured against long simulations it is not exceeded.
+// RelativeError is the size, relative to a rate in bits/s, of what the closed form
+// leaves out; a code's weak cross-talk about the other stream may be off by twice
+// as much.
 func (t *Truth) RelativeError() float64 { return t.error }
 
 // BurstShare is p̄, the baseline that the residual subtracts of each event.

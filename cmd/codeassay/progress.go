@@ -1,0 +1,33 @@
+package main
+
+import (
+	"sync"
+
+	"github.com/vbauerster/mpb/v8"
+	"github.com/vbauerster/mpb/v8/decor"
+)
+
+// progress draws a bar with the time left, where people can see it. update may be
+// called from any goroutine; finish has to be called in the end, and removes the
+// bar.
+func (e *environment) progress(name string, quiet bool) (update func(done, total int), finish func()) {
+	if quiet || !e.live {
+		return nil, func() {}
+	}
+	bars := mpb.New(mpb.WithOutput(e.stderr), mpb.WithWidth(40), mpb.WithAutoRefresh())
+	bar := bars.AddBar(1,
+		mpb.PrependDecorators(decor.Name(name+" "), decor.Percentage(decor.WCSyncSpace)),
+		mpb.AppendDecorators(decor.OnComplete(decor.AverageETA(decor.ET_STYLE_GO), ""), decor.Name(" left")),
+		mpb.BarRemoveOnComplete())
+	var once sync.Once
+	update = func(done, total int) {
+		bar.SetTotal(int64(max(total, 1)), false)
+		bar.SetCurrent(int64(min(done, total-1))) // finish completes it
+	}
+	return update, func() {
+		once.Do(func() {
+			bar.Abort(true)
+			bars.Wait()
+		})
+	}
+}

@@ -1,0 +1,49 @@
+package main
+
+import (
+	"codeassay/bench"
+	"codeassay/bench/catalog"
+	"codeassay/bench/rank"
+	"codeassay/bench/sweep"
+	"codeassay/estimators"
+	"codeassay/scenarios"
+	"codeassay/scenarios/files"
+	"codeassay/scenarios/synthetic"
+)
+
+// recording is what commands read: files, or a scenario that generates as it is
+// read.
+type recording interface {
+	sweep.Source
+	Notes() []estimators.Warning
+}
+
+var (
+	_ recording = (*scenarios.Recording)(nil)
+	_ recording = (*synthetic.PairedDrive)(nil)
+)
+
+// openRecording opens the files or the scenario that a study names; the scenario
+// is nil for files.
+func openRecording(study bench.Study) (recording, *synthetic.PairedDrive, error) {
+	if study.Recording.Scenario != "" {
+		p, err := catalog.Scenario(study)
+		if err != nil {
+			return nil, nil, err
+		}
+		return p, p, nil
+	}
+	part := study.Recording
+	r, err := files.Read(files.Paths{Spikes: part.Spikes, Streams: part.Streams, UnitsTable: part.UnitsTable},
+		files.Options{DurationS: part.DurationS, Units: part.Units, Trials: scenarios.TrialMeaning(part.Trials), DropOutside: part.DropOutside})
+	if err != nil {
+		return nil, nil, err
+	}
+	return r, nil, nil
+}
+
+// truthOf is the closed form of the scenario.
+func truthOf(p *synthetic.PairedDrive) *rank.Truth {
+	t := p.Truth()
+	return &rank.Truth{Kind: "first-order", RelativeError: t.RelativeError(), Spectra: t, BurstShare: t.BurstShare()}
+}
