@@ -78,7 +78,7 @@ func (f *figure) render(c draw.Canvas, k keyed) {
 	p := f.build()
 	below := lettering(labelSize)
 	below.XAlign, below.YAlign = draw.XCenter, draw.YBottom
-	room := draw.Crop(inner, 0, 0, below.FontExtents().Height+2, -k.height()-4)
+	room := draw.Crop(inner, 0, 0, below.FontExtents().Height-1, -k.height()-4)
 	p.Draw(room)
 	data := p.DataCanvas(room)
 	c.FillText(below, vg.Point{X: data.Center().X, Y: inner.Min.Y}, f.x.fitted(plotWidth))

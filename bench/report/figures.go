@@ -28,12 +28,15 @@ type figure struct {
 	most   float64   // of the y axis, at least
 }
 
-// title is that of an axis. A name from the user is shortened where there is not
-// enough room, what stands before and after it is not.
-type title struct{ before, name, after string }
+// title is that of an axis. Where there is not enough room its brief beginning is
+// taken, then a name from the user is shortened; the unit never is.
+type title struct{ before, name, after, brief string }
 
 func (t title) fitted(width vg.Length) string {
 	style := lettering(labelSize)
+	if t.brief != "" && style.Width(t.before+t.name+t.after) > width {
+		t.before = t.brief
+	}
 	return t.before + shortened(t.name, style, width-style.Width(t.before+t.after)) + t.after
 }
 
@@ -143,7 +146,7 @@ func (v *view) spectra() []figure {
 				name = "-in-" + trimmed(sp.InputBandwidthHz, 4) + "-hz"
 				note = " of " + trimmed(sp.InputBandwidthHz, 4) + " Hz"
 			}
-			out = append(out, figure{name: slug("coherence", sp.Stream+name), x: title{before: "Frequency (Hz)"}, y: title{"Squared coherence with ", plain(sp.Stream), note},
+			out = append(out, figure{name: slug("coherence", sp.Stream+name), x: title{before: "Frequency (Hz)"}, y: title{"Squared coherence with ", plain(sp.Stream), note, "Coherence² with "},
 				about: fmt.Sprintf("Magnitude-squared coherence of every code of %s with the stream %s%s, against frequency.", counted(int64(sp.Cells), "cell"), plain(sp.Stream), note),
 				least: 0, most: 0.05})
 		}
@@ -262,7 +265,7 @@ func (v *view) sizeFigures() []figure {
 }
 
 func aboutAxis(streams ...string) title {
-	return title{"Information about ", listed(plainAll(streams)), " (bits/s)"}
+	return title{"Information about ", listed(plainAll(streams)), " (bits/s)", "About "}
 }
 
 // pairFigures are the pairs against ensemble size, beside what they are held

@@ -2,6 +2,7 @@ package report
 
 import (
 	"fmt"
+	"slices"
 	"strings"
 
 	"github.com/olekukonko/tablewriter"
@@ -15,8 +16,9 @@ const gap = 2
 // A column that may be broken is shrunk to comfortable before other columns are
 // left out, and to narrowest where nothing is left to leave out.
 const (
-	comfortable = 16
-	narrowest   = 10
+	comfortable  = 16
+	narrowest    = 10
+	shortestHead = 8 // of a heading, or its longest word
 )
 
 // table fits a table to the width, sets it, and says what was left out.
@@ -160,7 +162,7 @@ func fitted(t table, width int) (table, string) {
 		if c.expendable == 0 || total(widths(tried)) <= width {
 			break
 		}
-		if c.expendable < spare {
+		if c.expendable < spare && !slices.Contains(gone, c.name()) {
 			gone = append(gone, c.name())
 		}
 		t = t.keep(func(i int) bool { return i != worst })
@@ -179,7 +181,7 @@ func fitted(t table, width int) (table, string) {
 func mostExpendable(t table) int {
 	worst := 0
 	for i, c := range t.columns {
-		if c.expendable > t.columns[worst].expendable {
+		if c.expendable >= t.columns[worst].expendable {
 			worst = i
 		}
 	}
@@ -220,8 +222,9 @@ func thinTo(t table, most int) (out table, kept, of int) {
 	return t.keep(func(i int) bool { return stays[i] }), kept, of
 }
 
-// shrunk breaks the cells of columns that allow it, down to least columns, so that
-// the table has the width or as near as can be.
+// shrunk breaks headings that are wider than what stands below them, then the
+// cells of columns that allow it, down to least, so that the table has the width
+// or as near as can be.
 func shrunk(t table, width, least int) table {
 	w := widths(t)
 	over := total(w) - width
@@ -229,6 +232,21 @@ func shrunk(t table, width, least int) table {
 		return t
 	}
 	out := t.copied()
+	for c, col := range t.columns {
+		if over <= 0 {
+			break
+		}
+		body := 0
+		for _, row := range t.rows {
+			body = max(body, displayWidth(row[c].text))
+		}
+		if to := max(body, shortestHead, w[c]-over); to < w[c] && !col.wrap {
+			out.columns[c].head = strings.Join(wrapped(col.head, to), "\n")
+			now := displayWidth(append(strings.Split(out.columns[c].heading(), "\n"), strings.Repeat(" ", body))...)
+			over -= w[c] - now
+			w[c] = now
+		}
+	}
 	for c, col := range t.columns {
 		if !col.wrap || over <= 0 {
 			continue

@@ -1,8 +1,8 @@
 package report
 
 import (
-	"fmt"
 	"math"
+	"strings"
 
 	"codeassay/bench"
 	"codeassay/estimators"
@@ -25,8 +25,6 @@ type recipe struct {
 	truth        bool
 	detectsAbove float64 // bits/s
 }
-
-func flat(float64) float64 { return 1 }
 
 // rate of a code whose coherence is sN/(1+sN) up to width Hz.
 func rate(s, cells, width float64) float64 { return width * math.Log2(1+s*cells) }
@@ -128,7 +126,7 @@ func (r recipe) family(n, top, e int, est string, b, s int, input float64, parti
 		if input > 0 {
 			row.InputBandwidthHz = num(input)
 		}
-		if est == "plug-in" {
+		if strings.HasPrefix(est, "plug-in") {
 			row.Quantity, row.Segments, row.NEff = estimators.WindowInformation, 0, bench.None
 		}
 		if n == top {
@@ -142,7 +140,7 @@ func (r recipe) family(n, top, e int, est string, b, s int, input float64, parti
 		if row.Detected {
 			row.BitsPerSpike, row.BitsPerEvent = num(value/(8*float64(n))), num(value/(6*float64(n)))
 		}
-		if r.truth && est != "plug-in" && c < 5 {
+		if r.truth && !strings.HasPrefix(est, "plug-in") && c < 5 {
 			row.TruthBitsPerS = num(exact)
 		}
 		rows = append(rows, row)
@@ -283,14 +281,20 @@ func documents() map[string]*bench.Document {
 	out["bands"] = bands.document()
 
 	inputs := demo
-	inputs.title, inputs.inputs, inputs.sizes, inputs.bands = "Faster streams", []float64{5, 10, 20, 50}, []int{8, 128, 1000}, [][2]float64{{0, 50}}
+	inputs.title, inputs.inputs, inputs.sizes, inputs.bands = "Faster streams", []float64{5, 20, 50}, []int{8, 128, 1000}, [][2]float64{{0, 50}}
 	inputs.estimators, inputs.chance, inputs.given = []string{"multitaper"}, false, false
 	out["input-bandwidths"] = inputs.document()
+
+	many := demo
+	many.title, many.streams, many.sizes = "Many estimators", []string{"position"}, []int{12, 100}
+	many.estimators = []string{"multitaper", "welch", "plug-in", "plug-in-raw", "plug-in-miller-madow", "plug-in-panzeri-treves"}
+	many.pairs, many.given, many.chance = false, false, false
+	out["many-estimators"] = many.document()
 
 	hostile := demo
 	hostile.title = "<script>alert('1')</script> & \x1b[31mred\x1b[0m_100%\\input{x}"
 	hostile.streams = []string{"=cmd|' /C calc'!A0", "a|b*c_d~e^f#g$h%i&j{k}\u202egnp.exe"}
-	hostile.codes = []string{"@SUM(1)", "-1+1", "a-very-long-code-name-that-no-column-would-hold-in-any-table", "漢字の名前", "line\nbreak\ttab", "</text>]]>", "\xff\xfe"}
+	hostile.codes = []string{"@SUM(1)", "-1+1", "a-very-long-code-name-that-no-column-would-hold-in-any-table", "漢字の名前", "line\nbreak\ttab", "</text>]]>", "\ufffd"}
 	hostile.sizes, hostile.estimators = []int{3, 300}, []string{"multitaper"}
 	doc = hostile.document()
 	doc.Warnings = []estimators.Warning{{Severity: estimators.Weak, About: "../../etc", Text: "[link](javascript:x) `code` \x1b]0;title\x07", Remedy: "\\write18{ls}"}}
@@ -299,5 +303,3 @@ func documents() map[string]*bench.Document {
 	out["empty"] = &bench.Document{Tool: "codeassay", Version: "0.1.0", Command: "rank", Recording: bench.RecordingSummary{DurationS: bench.None, UsedS: bench.None, BurstFraction: bench.None, ChanceBurstFraction: bench.None}}
 	return out
 }
-
-var _ = fmt.Sprint

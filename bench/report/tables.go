@@ -140,9 +140,9 @@ func pairTable(caption string, rows []*bench.JointRow) table {
 	t := table{caption: caption, columns: []column{
 		{head: "cells", number: true},
 		{head: "bits/s", number: true},
-		{head: percent(rows[0].Confidence, 3) + " interval", unit: "(bits/s)", number: true},
+		{head: percent(rows[0].Confidence, 3) + " interval", unit: "(bits/s)", number: true, expendable: 1},
 		{head: "× spike rate", number: true},
-		{head: "interval", number: true, expendable: 1},
+		{head: "interval", number: true, expendable: 2},
 		{head: "× split", number: true, expendable: 3},
 		{head: "interval", number: true, expendable: 4},
 		{head: "p", number: true, expendable: spare},
@@ -207,8 +207,8 @@ func (v *view) partialTable(g *group) []block {
 		{head: "code", wrap: true},
 		{head: "alone", unit: "(bits/s)", number: true},
 		{head: "given", unit: "(bits/s)", number: true},
-		{head: percent(rows[0].Confidence, 3) + " interval", unit: "(bits/s)", number: true},
-		{head: "for new cells", unit: "(bits/s)", number: true, expendable: 1},
+		{head: percent(rows[0].Confidence, 3) + " interval", unit: "(bits/s)", number: true, expendable: 1},
+		{head: "for new cells", unit: "(bits/s)", number: true, expendable: 2},
 	}}
 	for _, r := range rows {
 		beside := cell{absent, faint}
@@ -235,7 +235,7 @@ func (v *view) byChance() []block {
 			{head: "code", wrap: true},
 			{head: "data", unit: "(bits/s)", number: true},
 			{head: "surrogate", unit: "(bits/s)", number: true},
-			{head: percent(g.rows[0].Confidence, 3) + " interval", unit: "(bits/s)", number: true},
+			{head: percent(g.rows[0].Confidence, 3) + " interval", unit: "(bits/s)", number: true, expendable: 1},
 		}}
 		data := v.like(g.scope)
 		for _, r := range g.at(cells) {
@@ -339,8 +339,8 @@ func (v *view) beside(names []string) []block {
 			s.estimator = e
 			columns = append(columns, v.like(s))
 			t.columns = append(t.columns,
-				column{head: plain(e), unit: "(bits/s)", number: true},
-				column{head: "interval", number: true, expendable: 1 + i})
+				column{head: plain(e), unit: "(bits/s)", number: true, expendable: min(i, 1)},
+				column{head: "interval", number: true, expendable: min(2+i, spare-1)})
 		}
 		for _, code := range g.codes() {
 			row := []cell{{text: plain(code)}}

@@ -88,7 +88,7 @@ func (p *typesetter) heading(h heading) {
 		lines := wrapped(text, p.Width-4)
 		for i, l := range lines {
 			if i == len(lines)-1 {
-				l = "── " + l + " " + strings.Repeat("─", max(p.Width-displayWidth(l)-4, 0))
+				l = strings.TrimRight("── "+l+" "+strings.Repeat("─", max(p.Width-displayWidth(l)-4, 0)), " ")
 			}
 			p.line(l, strong)
 		}

@@ -44,7 +44,15 @@ func (p *plan) noteStreams() {
 		if p.frozen {
 			trials = trials[:1]
 		}
-		x := slices.Concat(trials...)
+		// Every sample of a slow stream says little more than its neighbours: a
+		// few to a period of the band's edge keep the shape and cost far less.
+		step := max(1, int(1/(4*p.settings.Chosen.Bands[s].High)/p.bin))
+		var x []float64
+		for _, trial := range trials {
+			for i := 0; i < len(trial); i += step {
+				x = append(x, trial[i])
+			}
+		}
 		name := p.layout.Streams[s]
 		if shape := stationarity.Gaussianity(x); shape.Visible() {
 			p.warnings = append(p.warnings, estimators.Warning{Severity: estimators.Weak, About: name,

@@ -2,6 +2,7 @@ package sweep
 
 import (
 	"context"
+	"fmt"
 	"slices"
 	"sync"
 	"sync/atomic"
@@ -293,8 +294,18 @@ func (g *engine) cellSizes() int {
 // cellBatch is the number of sizes whose cells are measured side by side.
 func (g *engine) cellBatch() int { return max(1, batchBytes/((1+cellGroups)*g.snapshotBytes())) }
 
+// fewestForChance is the number of cells below which events cannot be dealt to
+// other cells often enough for their trains to lose the dead time.
+const fewestForChance = 8
+
 // measureChance ranks the burst-free surrogate of the full ensemble.
 func (g *engine) measureChance(ctx context.Context, out *bench.Outcome) error {
+	if g.layout.Cells < fewestForChance {
+		g.warnings = append(g.warnings, estimators.Warning{Severity: estimators.Note, About: "chance",
+			Text:   fmt.Sprintf("no burst-free surrogate was ranked: it deals each event to another cell, and %d are too few for that; only the expected share of chance bursts is given", g.layout.Cells),
+			Remedy: fmt.Sprintf("at least %d cells", fewestForChance)})
+		return nil
+	}
 	var counts tally.Totals
 	for u := range g.layout.Cells {
 		counts = counts.Add(g.store.ChanceTotals(u, g.rules[u], g.totalS()))

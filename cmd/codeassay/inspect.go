@@ -15,7 +15,7 @@ import (
 func inspectCommand(env *environment) *cobra.Command {
 	var flags shared
 	cmd := &cobra.Command{
-		Use:   "inspect [flags] [STUDY.toml | SPIKES.csv STREAMS.csv | RECORDING.npz]",
+		Use:   "inspect [flags] [STUDY.toml | SPIKES STREAMS | RECORDING.npz]",
 		Short: "describe a recording and what is wrong with it",
 		Long: `inspect describes a recording and what is wrong with it: rates, the histogram of
 intervals with the burst threshold, singlets, doublets and triplets, bursts that

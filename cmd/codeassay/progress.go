@@ -14,15 +14,23 @@ func (e *environment) progress(name string, quiet bool) (update func(done, total
 	if quiet || !e.live {
 		return nil, func() {}
 	}
+	eta := decor.AverageETA(decor.ET_STYLE_GO)
+	left := decor.Any(func(s decor.Statistics) string {
+		if s.Current == 0 {
+			return "reading"
+		}
+		time, _ := eta.Decor(s)
+		return time + " left"
+	})
 	bars := mpb.New(mpb.WithOutput(e.stderr), mpb.WithWidth(40), mpb.WithAutoRefresh())
-	bar := bars.AddBar(1,
+	bar := bars.AddBar(0, // the total comes with the first update
 		mpb.PrependDecorators(decor.Name(name+" "), decor.Percentage(decor.WCSyncSpace)),
-		mpb.AppendDecorators(decor.OnComplete(decor.AverageETA(decor.ET_STYLE_GO), ""), decor.Name(" left")),
+		mpb.AppendDecorators(left),
 		mpb.BarRemoveOnComplete())
 	var once sync.Once
 	update = func(done, total int) {
-		bar.SetTotal(int64(max(total, 1)), false)
-		bar.SetCurrent(int64(min(done, total-1))) // finish completes it
+		bar.SetTotal(int64(total), false)
+		bar.SetCurrent(int64(done))
 	}
 	return update, func() {
 		once.Do(func() {
