@@ -19,7 +19,7 @@ const (
 // cortical pyramidal cells, no source.
 const (
 	DefaultMaxISI    int64 = 15e6 // ns
-	DefaultMinSpikes       = 2
+	DefaultMinSpikes int   = 2
 )
 
 // BurstRule says what a burst is: at least MinSpikes spikes with successive

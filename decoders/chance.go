@@ -42,6 +42,26 @@ func (r BurstRule) ChanceEvents(rate float64) [4]float64 {
 	return events
 }
 
+// PoissonRate is the rate, in spikes/s, of the Poisson train in which the rule
+// finds events a second: rate·e^(−rate·MaxISI) of them with the plain rule. Beyond
+// the most events that any Poisson train shows it is 1/MaxISI, which shows them.
+func (r BurstRule) PoissonRate(events float64) float64 {
+	low, high := events, 1e9/float64(r.MaxISI)
+	if low >= high {
+		return high
+	}
+	for range 60 {
+		mid := (low + high) / 2
+		shown := r.ChanceEvents(mid)
+		if mid*(shown[0]+shown[1]+shown[2]+shown[3]) < events {
+			low = mid
+		} else {
+			high = mid
+		}
+	}
+	return (low + high) / 2
+}
+
 // chanceBegin is the probability that a run of intervals ≤ MaxISI has a spike
 // with a silence before it and an interval ≤ FirstISI after it. short is the
 // probability of an interval ≤ MaxISI.

@@ -60,3 +60,16 @@ func TestChanceEvents(t *testing.T) {
 	}
 	assert.Equal(t, [4]float64{1, 0, 0, 0}, decoders.DefaultBurstRule().ChanceEvents(0))
 }
+
+// The rate is found again from the events that a Poisson train of it shows.
+func TestPoissonRateInvertsChanceEvents(t *testing.T) {
+	rules := []decoders.BurstRule{decoders.DefaultBurstRule(), {MaxISI: 15e6, FirstISI: 6e6, MinSilence: 50e6, MinSpikes: 3}}
+	for _, rule := range rules {
+		for _, rate := range []float64{0.1, 5, 20, 50} {
+			e := rule.ChanceEvents(rate)
+			assert.InEpsilon(t, rate, rule.PoissonRate(rate*(e[0]+e[1]+e[2]+e[3])), 1e-6)
+		}
+	}
+	assert.InEpsilon(t, 20, decoders.DefaultBurstRule().PoissonRate(20*math.Exp(-0.3)), 1e-9)
+	assert.InEpsilon(t, 1/0.015, decoders.DefaultBurstRule().PoissonRate(100), 1e-9, "no Poisson train shows as many events")
+}

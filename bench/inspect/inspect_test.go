@@ -80,7 +80,9 @@ func TestCountsByHand(t *testing.T) {
 	assert.Equal(t, 5, a.Events)
 	assert.Equal(t, 3, a.Bursts)
 	assert.InDelta(t, 0.6, float64(a.BurstFraction), 1e-12)
-	assert.InDelta(t, 1-math.Exp(-0.5*0.015), float64(a.Chance), 1e-12)
+	// λ with λ e^(−15 ms λ) = 0.5 events/s: two steps of λ ← 0.5 e^(15 ms λ) are exact to 1e-7.
+	rate := 0.5 * math.Exp(0.015*0.5*math.Exp(0.015*0.5))
+	assert.InDelta(t, 1-math.Exp(-rate*0.015), float64(a.Chance), 1e-7)
 	assert.Equal(t, 1, doc.Rows[1].Below1MS)
 	assert.Equal(t, Sizes{bench.Number(3.0 / 7), bench.Number(2.0 / 7), bench.Number(1.0 / 7), bench.Number(1.0 / 7)}, doc.Sizes)
 	assert.Equal(t, int64(15), doc.Recording.Spikes)

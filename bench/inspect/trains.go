@@ -130,7 +130,8 @@ func (r *reader) describe(doc *Document) {
 		u.BurstFraction, u.Chance, u.IntervalCV, u.DriftP = bench.None, bench.None, bench.None, bench.None
 		if u.Events > 0 {
 			u.BurstFraction = ratio(u.Bursts, u.Events)
-			u.Chance = bench.Number(decoders.ChanceBurstFraction(float64(u.EventsPerS), u.maxISI))
+			rule := decoders.BurstRule{MaxISI: u.maxISI, MinSpikes: 2}
+			u.Chance = bench.Number(decoders.ChanceBurstFraction(rule.PoissonRate(float64(u.EventsPerS)), u.maxISI))
 			chance += float64(u.Events) * float64(u.Chance)
 		}
 		if s := r.sums[i]; s.n >= 2 {

@@ -67,8 +67,9 @@ func (t *Truth) over(band bench.Band) []spectraAt {
 // the spectra are smooth within it.
 const truthCells = 400
 
-// weights are a linear code's weights over the five trains; false for a ratio.
-func (t *Truth) weights(c decoders.Code) ([5]float64, bool) {
+// Weights are a linear code's weights over the five trains that a truth is stated
+// for; false for a ratio.
+func (t *Truth) Weights(c decoders.Code) ([5]float64, bool) {
 	if !c.Linear() {
 		return [5]float64{}, false
 	}
@@ -82,7 +83,7 @@ func (t *Truth) weights(c decoders.Code) ([5]float64, bool) {
 
 // row is the true rate of a single or partial row, None for a ratio code.
 func (t *Truth) row(l *bench.Layout, key bench.RowKey, cells int) bench.Number {
-	w, ok := t.weights(l.Codes[key.Code])
+	w, ok := t.Weights(l.Codes[key.Code])
 	if !ok {
 		return bench.None
 	}
@@ -92,8 +93,8 @@ func (t *Truth) row(l *bench.Layout, key bench.RowKey, cells int) bench.Number {
 // joint is the true rate of a pair of linear codes about all streams.
 func (t *Truth) joint(l *bench.Layout, key bench.RowKey, cells int) bench.Number {
 	pair := l.Pairs[key.Pair]
-	a, okA := t.weights(l.Codes[pair[0]])
-	b, okB := t.weights(l.Codes[pair[1]])
+	a, okA := t.Weights(l.Codes[pair[0]])
+	b, okB := t.Weights(l.Codes[pair[1]])
 	if !okA || !okB {
 		return bench.None
 	}

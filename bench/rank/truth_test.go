@@ -68,13 +68,13 @@ func TestTruthOfSuperposedCells(t *testing.T) {
 	m := poissonMarks{rate: 40, a: 0.5, p: 0.25, b: 0.2, s: 10.0 / 400}
 	truth := &Truth{Spectra: m, BurstShare: m.p}
 	band := bench.Band{High: 20}
-	w, ok := truth.weights(trains("event-rate"))
+	w, ok := truth.Weights(trains("event-rate"))
 	assert.True(t, ok)
 	for n, msc := range map[int]float64{1: .2, 4: .5, 16: .8} {
 		assert.InDelta(t, -20*math.Log2(1-msc), float64(truth.Rate([][5]float64{w}, n, band, 0, false)), 1e-9)
 		assert.InDelta(t, 0, float64(truth.Rate([][5]float64{w}, n, band, 1, false)), 1e-9)
 	}
-	residual, ok := truth.weights(trains("burst-residual"))
+	residual, ok := truth.Weights(trains("burst-residual"))
 	assert.True(t, ok)
 	assert.Equal(t, [5]float64{-.25, .75, .75, .75, 0}, residual)
 	snr := 16 * m.rate * m.b * m.b * m.s / (m.p * (1 - m.p))
@@ -83,13 +83,13 @@ func TestTruthOfSuperposedCells(t *testing.T) {
 	joint := truth.Rate([][5]float64{w, residual}, 16, band, -1, false)
 	assert.InDelta(t, -20*math.Log2(.2)+20*math.Log2(1+snr), float64(joint), 1e-9)
 	// The burst rate mixes both streams: given one, more is known of the other.
-	bursts, _ := truth.weights(trains("burst-rate"))
+	bursts, _ := truth.Weights(trains("burst-rate"))
 	plain := truth.Rate([][5]float64{bursts}, 16, band, 1, false)
 	given := truth.Rate([][5]float64{bursts}, 16, band, 1, true)
 	assert.Greater(t, float64(given), float64(plain))
 	// Chain rule: about both = about one + about the other, given the one.
 	other := truth.Rate([][5]float64{bursts}, 16, band, 0, false)
 	assert.InDelta(t, float64(truth.Rate([][5]float64{bursts}, 16, band, -1, false)), float64(other+given), 1e-9)
-	_, ok = truth.weights(trains("burst-fraction"))
+	_, ok = truth.Weights(trains("burst-fraction"))
 	assert.False(t, ok, "a ratio has no closed form")
 }

@@ -26,12 +26,13 @@ type curve struct {
 	shift   vg.Length // sideways, so that series do not hide each other
 }
 
+// backdrop draws what lies under the lines of all series: known truth, and the
+// interval as a band.
+type backdrop struct{ curve }
+
 // Plot implements plot.Plotter.
-func (c curve) Plot(to draw.Canvas, p *plot.Plot) {
-	x, y := p.Transforms(&to)
-	at := func(i int, v bench.Number) vg.Point {
-		return vg.Point{X: x(c.points[i].x) + c.shift, Y: y(float64(v))}
-	}
+func (c backdrop) Plot(to draw.Canvas, p *plot.Plot) {
+	at := c.placed(&to, p)
 	c.runs(func(p point) bool { return p.truth.Known() }, func(first, end int) {
 		var path vg.Path
 		for i := first; i < end; i++ {
@@ -40,20 +41,34 @@ func (c curve) Plot(to draw.Canvas, p *plot.Plot) {
 		to.SetLineStyle(draw.LineStyle{Color: c.look.pale(0x55), Width: broad})
 		to.Stroke(path)
 	})
-	if c.filled {
-		c.runs(func(p point) bool { return p.low.Known() && p.high.Known() }, func(first, end int) {
-			var path vg.Path
-			for i := first; i < end; i++ {
-				extend(&path, at(i, c.points[i].low))
-			}
-			for i := end - 1; i >= first; i-- {
-				extend(&path, at(i, c.points[i].high))
-			}
-			path.Close()
-			to.SetColor(c.look.pale(0x40))
-			to.Fill(path)
-		})
+	if !c.filled {
+		return
 	}
+	c.runs(func(p point) bool { return p.low.Known() && p.high.Known() }, func(first, end int) {
+		var path vg.Path
+		for i := first; i < end; i++ {
+			extend(&path, at(i, c.points[i].low))
+		}
+		for i := end - 1; i >= first; i-- {
+			extend(&path, at(i, c.points[i].high))
+		}
+		path.Close()
+		to.SetColor(c.look.pale(0x40))
+		to.Fill(path)
+	})
+}
+
+// placed gives the place on the canvas of a value at the i-th point.
+func (c curve) placed(to *draw.Canvas, p *plot.Plot) func(i int, v bench.Number) vg.Point {
+	x, y := p.Transforms(to)
+	return func(i int, v bench.Number) vg.Point {
+		return vg.Point{X: x(c.points[i].x) + c.shift, Y: y(float64(v))}
+	}
+}
+
+// Plot implements plot.Plotter.
+func (c curve) Plot(to draw.Canvas, p *plot.Plot) {
+	at := c.placed(&to, p)
 	if c.joined {
 		c.runs(func(p point) bool { return p.y.Known() }, func(first, end int) {
 			var path vg.Path

@@ -138,6 +138,7 @@ func TestLaTeXIsWellFormed(t *testing.T) {
 		assert.Empty(t, open, name)
 	}
 	assert.Equal(t, `$\alpha$\_1 \& 5\,\%`, strings.Replace(latexText("α_1 & 5 %"), `5 \`, `5\,\`, 1))
+	assert.Equal(t, `{[}2pt{]}{*}`, latexText("[2pt]*"), "not taken as the argument of the line break before it")
 	assert.Equal(t, `\textbackslash{}input\{x\}`, latexText(`\input{x}`))
 }
 

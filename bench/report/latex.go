@@ -83,7 +83,7 @@ func latexText(s string) string {
 var latexSigns = map[rune]string{
 	'\\': `\textbackslash{}`, '{': `\{`, '}': `\}`, '$': `\$`, '&': `\&`, '#': `\#`, '%': `\%`, '_': `\_`,
 	'^': `\textasciicircum{}`, '~': `\textasciitilde{}`, '<': `\textless{}`, '>': `\textgreater{}`, '|': `\textbar{}`,
-	'"': `\textquotedbl{}`, '\'': `\textquotesingle{}`, '`': `\textasciigrave{}`,
+	'"': `''`, '`': `\textasciigrave{}`, '[': `{[}`, ']': `{]}`, '*': `{*}`, // a row may not begin with [ or *
 	'–': `--`, '—': `---`, '−': `$-$`, '×': `$\times$`, '÷': `$\div$`, '±': `$\pm$`, '≥': `$\geq$`, '≤': `$\leq$`, '≈': `$\approx$`,
 	'†': `\textdagger{}`, '°': `\textdegree{}`, '²': `\textsuperscript{2}`, '³': `\textsuperscript{3}`, '…': `\dots{}`, '\uFFFD': `?`,
 	'α': `$\alpha$`, 'β': `$\beta$`, 'γ': `$\gamma$`, 'δ': `$\delta$`, 'ε': `$\varepsilon$`, 'ζ': `$\zeta$`, 'η': `$\eta$`, 'θ': `$\theta$`,

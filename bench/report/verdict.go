@@ -50,7 +50,7 @@ func (v *view) ranked(g *group, verbose bool) []block {
 		cells := shown[len(shown)-1-i] // the largest first
 		head := fmt.Sprintf("%s, %s, %s", about, g.where(), counted(int64(cells), "cell"))
 		rows := g.at(cells)
-		out = append(out, heading{3, head}, paragraph{text: verdictOf(rows, v.confidence())}, rankTable(head, rows))
+		out = append(out, heading{3, head}, paragraph{text: verdictOf(rows, v.confidence())}, rankTable("Ranking. "+head, rows))
 		if used, band := rows[0].UsedHz, g.high-g.low; used.Known() && float64(used) < 0.999*band {
 			out = append(out, paragraph{text: fmt.Sprintf("The stream has power in %s of these %s Hz; only that is summed.",
 				trimmed(used, 3), trimmed(bench.Number(band), 4)), tone: faint})
@@ -130,9 +130,13 @@ func rankTable(caption string, rows []*bench.Row) table {
 				tone = strong
 			}
 		}
+		spread := absent // of one draw there is none
+		if r.Draws > 1 {
+			spread = digits(r.DrawSD, 2)
+		}
 		texts := []string{place, plain(r.Code), bits(r.BitsPerS, r.CILow, r.CIHigh), span(r.BitsPerS, r.CILow, r.CIHigh),
 			span(r.BitsPerS, r.CICellsLow, r.CICellsHigh), perSpike, probability(r.PValue),
-			bits(r.TruthBitsPerS, r.CILow, r.CIHigh), digits(r.BitsPerEvent, 3), digits(r.DrawSD, 2)}
+			bits(r.TruthBitsPerS, r.CILow, r.CIHigh), digits(r.BitsPerEvent, 3), spread}
 		line := make([]cell, len(texts))
 		for i, s := range texts {
 			line[i] = cell{s, tone}

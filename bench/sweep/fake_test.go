@@ -45,6 +45,7 @@ type fakeSettings struct {
 	seed             uint64
 	trials           int
 	meaning          scenarios.TrialMeaning
+	poisson          float64 // events/s of cells without dead time; 0: the usual ones
 }
 
 const (
@@ -71,7 +72,10 @@ func newFake(o fakeSettings) *fake {
 	}
 	a, b := flatNoise(rng, n*distinct, fakeBand), flatNoise(rng, n*distinct, fakeBand)
 	f.streams = []scenarios.Stream{{Name: "a", Samples: a, BandHz: fakeBand}, {Name: "b", Samples: b, BandHz: fakeBand}}
-	hazard := fakeRate / (1 - fakeRate*fakeDead)
+	hazard, dead := fakeRate/(1-fakeRate*fakeDead), fakeDead
+	if o.poisson > 0 {
+		hazard, dead = o.poisson, 0
+	}
 	for u := range o.cells {
 		f.units = append(f.units, scenarios.Unit{Name: string(rune('A'+u%26)) + string(rune('0'+u/26)), MaxISI: -1, FirstISI: -1, MinSilence: -1})
 		for r := range trials {
@@ -87,7 +91,7 @@ func newFake(o fakeSettings) *fake {
 				if o.bursts && rng.Float64() < fakeMark+o.markDepth*b[i] && t+0.005 < o.seconds {
 					train = append(train, int64((t+0.005)*1e9))
 				}
-				t += fakeDead
+				t += dead
 			}
 			f.trains = append(f.trains, train)
 		}

@@ -355,7 +355,7 @@ func (g *engine) describe(out *bench.Outcome) {
 	for u := range g.layout.Cells {
 		t := g.store.Totals(u)
 		counts = counts.Add(t)
-		chance += chanceBursts(g.rules[u].ChanceEvents(t.EventCount()/seconds)) * t.EventCount()
+		chance += chanceBursts(g.rules[u].ChanceEvents(g.rules[u].PoissonRate(t.EventCount()/seconds))) * t.EventCount()
 	}
 	trains := counts.Trains()
 	events := counts.EventCount()

@@ -85,33 +85,20 @@ func (d *truthDocument) add(truth *rank.Truth, codes []decoders.Code, pairs [][2
 	low, high := bench.Number(band.Low), bench.Number(band.High)
 	for s, stream := range d.Recording.Streams {
 		for _, c := range codes {
-			if !c.Linear() {
-				continue
+			if w, ok := truth.Weights(c); ok {
+				d.Rows = append(d.Rows, truthRow{stream, []string{}, c.Name, cells, low, high, truth.Rate([][5]float64{w}, cells, band, s, false)})
 			}
-			w := [][5]float64{trainWeights(c, truth)}
-			d.Rows = append(d.Rows, truthRow{stream, []string{}, c.Name, cells, low, high, truth.Rate(w, cells, band, s, false)})
 		}
 	}
 	for _, pair := range pairs {
-		a, b := codes[pair[0]], codes[pair[1]]
-		if !a.Linear() || !b.Linear() {
+		a, linearA := truth.Weights(codes[pair[0]])
+		b, linearB := truth.Weights(codes[pair[1]])
+		if !linearA || !linearB {
 			continue
 		}
-		w := [][5]float64{trainWeights(a, truth), trainWeights(b, truth)}
-		d.Joint = append(d.Joint, truthJoint{d.Recording.Streams, []string{a.Name, b.Name}, cells, low, high, truth.Rate(w, cells, band, -1, false)})
+		w := [][5]float64{a, b}
+		d.Joint = append(d.Joint, truthJoint{d.Recording.Streams, []string{codes[pair[0]].Name, codes[pair[1]].Name}, cells, low, high, truth.Rate(w, cells, band, -1, false)})
 	}
-}
-
-// trainWeights are a linear code's weights over the trains that a truth is stated
-// for: events of 1, 2, 3 and ≥ 4 spikes, and all spikes. A unit's own baseline is
-// the scenario's burst share.
-func trainWeights(c decoders.Code, truth *rank.Truth) (out [5]float64) {
-	w := c.Trains()
-	for i := range 4 {
-		out[i] = w[1+i] + w[5]*truth.BurstShare
-	}
-	out[4] = w[0]
-	return out
 }
 
 // sizesOf are the ensemble sizes of a study: 1, 2, 4, … and all cells unless

@@ -35,6 +35,7 @@ func Build(ctx context.Context, src Source, rules []decoders.BurstRule, spans []
 	if err := b.checkCounts(ctx); err != nil {
 		return nil, err
 	}
+	b.store.compareWithChance(rules)
 	return b.store, nil
 }
 

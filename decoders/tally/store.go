@@ -53,6 +53,9 @@ type Store struct {
 	totals  []Totals // by unit, over the whole recording
 	share   []uint32 // by unit: p̄ in units of 1/shareOne
 	longest int      // bins of the longest block
+	// byChance: the recording has no more spikes within bursts than chance
+	// explains, so the surrogate is made of all its spikes (see BurstFree).
+	byChance bool
 }
 
 // block is the spikes of one span with its halo. Bins count from low.

@@ -38,6 +38,11 @@ const finest = 20
 // p̄ is the one expected of a Poisson train with its event rate over the
 // recording (ChanceTotals).
 //
+// In a recording without bursts of its own, in which the spikes within bursts are
+// no more than chance makes them (up to half as many again), these are events as
+// well that only chance has joined: then all spikes are dealt out, and the
+// surrogate shows what the data show.
+//
 // The same state of rng gives the same surrogate. Where a rule looks further than
 // the halo, spikes within that reach of the span's ends are labelled as at the
 // ends of a trial.
@@ -67,13 +72,17 @@ func (s *Store) BurstFree(a *Accumulator, span int, rng *rand.Rand, rules []deco
 // moments in order, and the number of events of each bin in the words.
 func (a *Accumulator) deal(rng *rand.Rand) {
 	f, b := &a.free, a.block
+	from := 1 // kinds from the first event on
+	if a.store.byChance {
+		from = 0
+	}
 	f.owners, f.first = f.owners[:0], f.first[:0]
 	for unit := range b.units {
 		f.first = append(f.first, len(f.owners))
 		for page := range b.pages() {
 			at := b.groups(page, unit)
 			words := a.words[page*pageBins:]
-			events := b.spikes[at[1]:at[kindCount]]
+			events := b.spikes[at[from]:at[kindCount]]
 			for _, bin := range events {
 				words[bin][0]++
 			}
@@ -142,7 +151,7 @@ func (f *surrogate) timesOf(unit int, binNs int64) []int64 {
 
 // ChanceTotals are the counts to expect of a unit's burst-free surrogate over the
 // recording of the given length in s: a Poisson train with as many spikes as the
-// unit has events, labelled by the rule.
+// unit is dealt, labelled by the rule.
 func (s *Store) ChanceTotals(unit int, rule decoders.BurstRule, seconds float64) Totals {
 	t, _ := s.chance(unit, rule, seconds)
 	return t
@@ -151,6 +160,9 @@ func (s *Store) ChanceTotals(unit int, rule decoders.BurstRule, seconds float64)
 // chance is ChanceTotals with the burst share in 1/shareOne.
 func (s *Store) chance(unit int, rule decoders.BurstRule, seconds float64) (Totals, uint32) {
 	spikes := s.totals[unit].EventCount()
+	if s.byChance {
+		spikes = s.totals[unit].Spikes
+	}
 	t := Totals{Spikes: spikes}
 	if spikes > 0 {
 		for i, share := range rule.ChanceEvents(spikes / seconds) {
@@ -158,4 +170,23 @@ func (s *Store) chance(unit int, rule decoders.BurstRule, seconds float64) (Tota
 		}
 	}
 	return t.withShare()
+}
+
+// compareWithChance settles whether the recording's bursts may all be chance: the
+// spikes within them are at most 1.5 times as many as Poisson trains with the
+// units' event rates have. Half as many again leaves room for rates that are
+// modulated, which makes short intervals likelier.
+func (s *Store) compareWithChance(rules []decoders.BurstRule) {
+	if s.seconds == 0 {
+		return
+	}
+	found, expected := 0.0, 0.0
+	for unit, t := range s.totals {
+		events := t.EventCount()
+		found += t.Spikes - events
+		if events > 0 {
+			expected += rules[unit].PoissonRate(events/s.seconds)*s.seconds - events
+		}
+	}
+	s.byChance = found <= 1.5*expected
 }

@@ -166,3 +166,23 @@ func TestChooseLength(t *testing.T) {
 	length, _ = ChooseLength(short, 0.001, 20, 2)
 	assert.Equal(t, 1024, length)
 }
+
+// The edge of a flat band is found to the width of its smearing, and does not
+// depend on how finely the stream was sampled.
+func TestOwnBand(t *testing.T) {
+	rng := rand.New(rand.NewPCG(11, 12))
+	fine := flatBand(rng, 1<<16, 0.001, 20)
+	coarse := make([]float64, len(fine)/8)
+	for i := range coarse {
+		coarse[i] = fine[8*i]
+	}
+	edge, err := OwnBand([][]float64{fine}, 0.001)
+	require.NoError(t, err)
+	assert.InDelta(t, 20, edge, 1.5) // segments of 1.6 s: a bin of 0.5 Hz, lobes of two
+	same, err := OwnBand([][]float64{coarse}, 0.008)
+	require.NoError(t, err)
+	assert.InDelta(t, edge, same, 0.6)
+	none, err := OwnBand([][]float64{make([]float64, 1000)}, 0.001)
+	require.NoError(t, err)
+	assert.Zero(t, none)
+}

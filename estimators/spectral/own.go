@@ -14,11 +14,10 @@ func OwnBand(stretches [][]float64, dt float64) (float64, error) {
 		longest = max(longest, len(x))
 		total += len(x)
 	}
-	length := 16
-	for length*2 <= longest && length*2*40 <= total && length < 1<<16 {
-		length *= 2
-	}
-	design, err := NewWelch(min(length, longest), 0.5, "hann", dt, 0.5/dt)
+	// Forty segments, whatever the sample interval: the edge of a band must not
+	// depend on how finely a stream was sampled.
+	length := min(max(total/40, 16), 1<<16, longest)
+	design, err := NewWelch(length, 0.5, "hann", dt, 0.5/dt)
 	if err != nil {
 		return 0, err
 	}
