@@ -76,11 +76,33 @@ type Layout struct {
 	Confidence   float64
 }
 
-// CellsFromDraws reports whether the variation between cells at a size is told by
-// the spread between its draws: where these are at least eight, of at most half
-// the units each. Elsewhere groups of cells are left out.
-func (l *Layout) CellsFromDraws(size int) bool {
-	return l.Draws >= 8 && 2*l.Sizes[size] <= l.Cells
+// BetweenCells says how the variation between cells at a size is measured.
+type BetweenCells uint8
+
+const (
+	// Unmeasured: one cell cannot be left out of one, and few draws tell little.
+	Unmeasured BetweenCells = iota
+	// ByDraws: the spread between the draws tells it.
+	ByDraws
+	// ByGroups: groups of cells are left out in turn.
+	ByGroups
+)
+
+// FewestDraws is the number of draws whose spread tells the variation between
+// cells.
+const FewestDraws = 8
+
+// CellsMeasured is how the variation between cells at a size is measured. Draws
+// of at most half the units overlap little enough for their spread to tell it.
+func (l *Layout) CellsMeasured(size int) BetweenCells {
+	n := l.Sizes[size]
+	switch {
+	case 2*n > l.Cells && n > 1:
+		return ByGroups
+	case 2*n <= l.Cells && l.Draws >= FewestDraws:
+		return ByDraws
+	}
+	return Unmeasured
 }
 
 // Values are the rows of one ensemble in one draw: the estimate over all

@@ -114,7 +114,7 @@ func spectrum(stretches [][]float64, dt, bandHz float64) []Power {
 	density := make([]float64, design.Bins())
 	scratch := design.NewScratch()
 	for _, x := range stretches {
-		design.AddAuto(density, design.Transforms(nil, x, scratch))
+		design.AddAuto(density, design.Transforms(nil, x, 0, scratch))
 	}
 	total, peak := 0.0, 0.0
 	var out []Power

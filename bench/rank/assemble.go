@@ -181,10 +181,11 @@ func (a *assembler) cellsInterval(size, row int, mean, blockVar float64) (low, h
 	l := &a.out.Layout
 	share := float64(l.Sizes[size]) / float64(l.Cells)
 	var cellVar, cellDoF float64
-	switch c := a.cells[size]; {
-	case l.CellsFromDraws(size):
+	switch l.CellsMeasured(size) {
+	case bench.ByDraws:
 		cellVar, cellDoF = a.betweenDraws(size, row)/(1-share), float64(len(a.draws[size])-1)
-	case c != nil:
+	case bench.ByGroups:
+		c := a.cells[size]
 		cellVar, cellDoF = c.CellVar[row]-c.CrossVar[row], float64(c.Groups-1)
 	default:
 		return bench.None, bench.None

@@ -105,6 +105,7 @@ func TestVarianceBetweenDrawsIsNetOfNoise(t *testing.T) {
 			for j := range x {
 				v.Deleted = append(v.Deleted, []float64{(total - x[j]) / (blocks - 1), 0, 0})
 			}
+			out.Layout.Draws = draws
 			out.Pieces = append(out.Pieces, bench.Piece{Draw: d + 1, Sizes: []int{0}, Value: []bench.Values{v}})
 		}
 		b := newAssembler(out).betweenDraws(0, 0)

@@ -38,8 +38,22 @@ func (g *engine) noteDrift(counts []float64) {
 		Remedy: "a steady stretch of the recording, or a band that begins above 0 Hz"})
 }
 
-// noteStreams says when a stream is not Gaussian or not steady.
-func (p *plan) noteStreams() {
+// noteDraws says where no interval for new cells is given, and what would bring it.
+func (p *plan) noteDraws() {
+	l := &p.layout
+	for i, n := range l.Sizes {
+		if n > 1 && l.CellsMeasured(i) == bench.Unmeasured {
+			p.warnings = append(p.warnings, estimators.Warning{Severity: estimators.Note, About: "draws",
+				Text:   fmt.Sprintf("no interval for new cells is given up to half of all units: the spread between %d draws is too little to tell it", l.Draws),
+				Remedy: fmt.Sprintf("[sweep] draws = %d or more", bench.FewestDraws)})
+			return
+		}
+	}
+}
+
+// testStreams says when a stream is not Gaussian or not steady.
+func (p *plan) testStreams() []estimators.Warning {
+	var warnings []estimators.Warning
 	for s, trials := range p.streams {
 		if p.frozen {
 			trials = trials[:1]
@@ -55,17 +69,18 @@ func (p *plan) noteStreams() {
 		}
 		name := p.layout.Streams[s]
 		if shape := stationarity.Gaussianity(x); shape.Visible() {
-			p.warnings = append(p.warnings, estimators.Warning{Severity: estimators.Weak, About: name,
+			warnings = append(warnings, estimators.Warning{Severity: estimators.Weak, About: name,
 				Text: fmt.Sprintf("the stream is not Gaussian (skewness %.2f, excess kurtosis %.2f): the coherence rate is then no lower bound on the information about it, only what a linear reader of a Gaussian stream with this spectrum would have",
 					shape.Skewness, shape.ExcessKurtosis),
 				Remedy: "read the plug-in rows beside it, or drive with a Gaussian stream"})
 		}
 		if change := stationarity.StreamDrift(x); change.PValue < 0.001 {
-			p.warnings = append(p.warnings, estimators.Warning{Severity: estimators.Weak, About: name,
+			warnings = append(warnings, estimators.Warning{Severity: estimators.Weak, About: name,
 				Text:   fmt.Sprintf("the stream is not steady: its level changes over the recording (p = %.2g), so one spectrum does not describe it and intervals are too narrow", change.PValue),
 				Remedy: "a steady stretch of the recording, or a band that begins above 0 Hz"})
 		}
 	}
+	return warnings
 }
 
 // notePower says where frequencies were left out because a stream has next to no

@@ -91,7 +91,7 @@ func newPlan(study bench.Study, visible []decoders.Code, pairs [][2]int, src Sou
 	}
 	p.layRows()
 	p.layDrift()
-	p.noteStreams()
+	p.noteDraws()
 	p.notePower()
 	p.noteSampling()
 	p.noteFrozen()
@@ -192,6 +192,9 @@ func (p *plan) chooseBands(study bench.Study) error {
 	}
 	for s, stream := range p.src.Streams() {
 		edge := stream.BandHz
+		if len(study.Sweep.BandsHz) > 0 {
+			edge = p.topHz() // the study's bands stand for every stream's own
+		}
 		if edge == 0 {
 			stretches := p.streams[s]
 			if p.frozen {

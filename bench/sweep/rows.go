@@ -153,7 +153,7 @@ func (p *plan) findPower() {
 					continue
 				}
 				x := p.streams[s][span.Trial][span.First : span.First+span.Bins]
-				m.design.AddAuto(power, m.design.Transforms(nil, x, scratch))
+				m.design.AddAuto(power, m.design.Transforms(nil, x, 0, scratch))
 			}
 			peak := 0.0
 			for _, v := range power {

@@ -51,7 +51,13 @@ func Run(ctx context.Context, r Request) (*bench.Outcome, error) {
 	if err != nil {
 		return nil, err
 	}
+	// The streams are tested while the spikes are labelled.
+	var streams sync.WaitGroup
+	var tested []estimators.Warning
+	streams.Go(func() { tested = p.testStreams() })
 	store, err := tally.Build(ctx, r.Source, p.rules, p.spans, tally.Options{BinNs: p.binNs, HaloBins: p.halo, Workers: r.Workers})
+	streams.Wait()
+	p.warnings = append(p.warnings, tested...)
 	if err != nil {
 		return nil, err
 	}
@@ -263,10 +269,10 @@ func (g *engine) measureCells(ctx context.Context, out *bench.Outcome) error {
 		if n == g.layout.Cells {
 			draw = 0
 		}
-		groups := min(cellGroups, n)
-		if groups < 2 || g.layout.CellsFromDraws(i) {
+		if g.layout.CellsMeasured(i) != bench.ByGroups {
 			continue
 		}
+		groups := min(cellGroups, n)
 		jobs = append(jobs, g.deletionJob(g.store, g.order(draw), i, groups))
 		if len(jobs) == g.cellBatch() {
 			if err := flush(); err != nil {
@@ -283,8 +289,8 @@ func (g *engine) measureCells(ctx context.Context, out *bench.Outcome) error {
 // cellSizes is the number of sizes that measureCells visits.
 func (g *engine) cellSizes() int {
 	sizes := 0
-	for i, n := range g.layout.Sizes {
-		if n > 1 && !g.layout.CellsFromDraws(i) {
+	for i := range g.layout.Sizes {
+		if g.layout.CellsMeasured(i) == bench.ByGroups {
 			sizes++
 		}
 	}

@@ -1,7 +1,6 @@
 package sweep
 
 import (
-	"math"
 	"math/rand/v2"
 
 	"codeassay/decoders"
@@ -117,7 +116,7 @@ func (w *worker) transformStreams(span int) {
 		for i := range w.p.streams {
 			x := shifted(w.lagged[:s.Bins], w.p.streams[i][s.Trial], s.First, w.p.lags[i])
 			w.streamOf[e][i] = grow(w.streamOf[e][i], m.design.Items(s.Bins)*m.design.Bins())
-			m.design.Transforms(w.streamOf[e][i], x, w.scratch[e])
+			m.design.Transforms(w.streamOf[e][i], x, 0, w.scratch[e])
 		}
 	}
 }
@@ -150,14 +149,15 @@ func (w *worker) take(block, span int, acc *tally.Accumulator, snap *snapshot) {
 	signal := w.signal[:bins]
 	basis := &p.codes
 	for s := range basis.signals() {
+		var mean float64 // over the recording
 		if s < len(basis.linear) {
 			acc.Linear(signal, basis.linear[s])
-			subtract(signal, snap.means[s])
+			mean = snap.means[s]
 		} else {
 			r := s - len(basis.linear)
 			code := basis.codes[basis.ratios[r]]
 			acc.Ratio(signal, code.Weights, code.Over, basis.window, code.Prior(basis.prior), snap.base[r])
-			subtract(signal, snap.base[r])
+			mean = snap.base[r]
 		}
 		for e, m := range p.methods {
 			if !m.info.Spectral {
@@ -166,7 +166,7 @@ func (w *worker) take(block, span int, acc *tally.Accumulator, snap *snapshot) {
 			size := m.design.Items(bins) * m.design.Bins()
 			at := e*basis.signals() + s
 			w.signalOf[at] = grow(w.signalOf[at], size)
-			m.design.Transforms(w.signalOf[at], signal, w.scratch[e])
+			m.design.Transforms(w.signalOf[at], signal, mean, w.scratch[e])
 		}
 		w.sumWindows(span, s, signal, acc, snap)
 	}
@@ -230,8 +230,8 @@ func (w *worker) sumWindows(span, s int, signal []float64, acc *tally.Accumulato
 			r := s - len(p.codes.linear)
 			code := p.codes.codes[p.codes.ratios[r]]
 			prior := code.Prior(p.codes.prior)
-			w.eventWindows(w.num[:n], plan.bins, code.Weights, p.codes.parts[r].num, acc, snap)
-			w.eventWindows(w.den[:n], plan.bins, code.Over, p.codes.parts[r].den, acc, snap)
+			w.eventWindows(w.num[:n], plan.bins, code.Weights, p.codes.parts[r].num, acc)
+			w.eventWindows(w.den[:n], plan.bins, code.Over, p.codes.parts[r].den, acc)
 			for v := range sums {
 				sums[v] = snap.base[r]
 				if d := w.den[v] + prior; d > 0 {
@@ -254,7 +254,7 @@ func (w *worker) sumWindows(span, s int, signal []float64, acc *tally.Accumulato
 
 // eventWindows sums weighted events over windows: from the linear signals' sums
 // where the weights are a combination of theirs, else from the counts.
-func (w *worker) eventWindows(dst []float64, bins int, weights [4]float64, combination []float64, acc *tally.Accumulator, snap *snapshot) {
+func (w *worker) eventWindows(dst []float64, bins int, weights [4]float64, combination []float64, acc *tally.Accumulator) {
 	if combination == nil {
 		acc.Windows(dst, bins, weights)
 		return
@@ -264,21 +264,9 @@ func (w *worker) eventWindows(dst []float64, bins int, weights [4]float64, combi
 		if weight == 0 {
 			continue
 		}
-		mean := snap.means[s] * float64(bins) // removed from the signal before
 		for v := range dst {
-			dst[v] += weight * (w.windowOf[s][v] + mean)
+			dst[v] += weight * w.windowOf[s][v]
 		}
-	}
-	// Counts are whole numbers in all but exotic weights; drop the rounding that
-	// removing and restoring the mean brings.
-	for v, x := range dst {
-		dst[v] = math.Round(x*1e6) / 1e6
-	}
-}
-
-func subtract(x []float64, mean float64) {
-	for i := range x {
-		x[i] -= mean
 	}
 }
 

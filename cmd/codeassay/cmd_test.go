@@ -7,6 +7,7 @@ import (
 	"flag"
 	"fmt"
 	"io"
+	"math/rand/v2"
 	"os"
 	"path/filepath"
 	"strings"
@@ -282,6 +283,15 @@ weights = [0, 1, 0]
 		other, _ := mustCall(t, "rank", "--format", "json", "--workers", workers, filepath.Join(npz, "study.toml"))
 		assert.Equal(t, first, other, "%s workers", workers)
 	}
+	// The rows of the spikes in any other order.
+	spikes, err := os.ReadFile(filepath.Join(text, "spikes.csv"))
+	require.NoError(t, err)
+	rows := strings.SplitAfter(string(spikes), "\n")
+	rand.New(rand.NewPCG(1, 1)).Shuffle(len(rows)-2, func(i, j int) { rows[1+i], rows[1+j] = rows[1+j], rows[1+i] })
+	require.NoError(t, os.WriteFile(filepath.Join(text, "spikes.csv"), []byte(strings.Join(rows, "")), 0o644))
+	shuffled, _ := mustCall(t, "rank", "--format", "json", filepath.Join(text, "study.toml"))
+	assert.Equal(t, first, shuffled)
+
 	reseeded, _ := mustCall(t, "rank", "--format", "json", "--seed", "8", filepath.Join(text, "study.toml"))
 	assert.NotEqual(t, first, reseeded)
 	assert.Contains(t, reseeded, `"seed": 8`)

@@ -33,12 +33,13 @@ func last16(re, im, twiddles []float64) {
 	last16AVX2(&re[0], &im[0], &twiddles[0], len(re)/16)
 }
 
-func multiply(dst, x, w []float64) {
-	whole := len(x) &^ 3
-	if !vector || whole == 0 {
-		whole = 0
-	} else {
-		multiplyAVX2(&dst[0], &x[0], &w[0], whole)
+func weigh(dst, x, w []float64, mean float64) {
+	whole := 0
+	if vector {
+		whole = len(x) &^ 3
 	}
-	multiplyPortable(dst[whole:], x[whole:], w[whole:])
+	if whole > 0 {
+		weighAVX2(&dst[0], &x[0], &w[0], whole, mean)
+	}
+	weighPortable(dst[whole:], x[whole:], w[whole:], mean)
 }

@@ -13,5 +13,5 @@ func radix4AVX2(re *float64, im *float64, twiddles *float64, quarter int, blocks
 // last16AVX2 finishes blocks of 16 values, leaving each in natural order.
 func last16AVX2(re *float64, im *float64, twiddles *float64, blocks int)
 
-// multiplyAVX2 sets dst to x·w; n is a positive multiple of 4.
-func multiplyAVX2(dst *float64, x *float64, w *float64, n int)
+// weighAVX2 sets dst to (x − mean)·w; n is a positive multiple of 4.
+func weighAVX2(dst *float64, x *float64, w *float64, n int, mean float64)

@@ -231,22 +231,25 @@ last16loop:
 	VZEROUPPER
 	RET
 
-// func multiplyAVX2(dst *float64, x *float64, w *float64, n int)
-// Requires: AVX
-TEXT ·multiplyAVX2(SB), NOSPLIT, $0-32
-	MOVQ dst+0(FP), AX
-	MOVQ x+8(FP), CX
-	MOVQ w+16(FP), DX
-	MOVQ n+24(FP), BX
+// func weighAVX2(dst *float64, x *float64, w *float64, n int, mean float64)
+// Requires: AVX, AVX2, SSE2
+TEXT ·weighAVX2(SB), NOSPLIT, $0-40
+	MOVQ         dst+0(FP), AX
+	MOVQ         x+8(FP), CX
+	MOVQ         w+16(FP), DX
+	MOVQ         n+24(FP), BX
+	MOVSD        mean+32(FP), X0
+	VBROADCASTSD X0, Y0
 
-multiplyloop:
-	VMOVUPD (CX), Y0
-	VMULPD  (DX), Y0, Y0
-	VMOVUPD Y0, (AX)
+weighloop:
+	VMOVUPD (CX), Y1
+	VSUBPD  Y0, Y1, Y1
+	VMULPD  (DX), Y1, Y1
+	VMOVUPD Y1, (AX)
 	ADDQ    $0x20, AX
 	ADDQ    $0x20, CX
 	ADDQ    $0x20, DX
 	SUBQ    $0x04, BX
-	JNZ     multiplyloop
+	JNZ     weighloop
 	VZEROUPPER
 	RET

@@ -81,22 +81,25 @@ func (p *Plan) split(z Packed) (re, im []float64) {
 	return z[:p.n], z[p.n+gap:]
 }
 
-// Pack sets dst to wa·a + i·wb·b, zero beyond the segments' end. a must be no
-// longer than the plan; b is nil (zero) or as long as a; a nil window is ones.
-func (p *Plan) Pack(dst Packed, a, b, wa, wb []float64) {
+// Pack sets dst to wa·(a − mean) + i·wb·(b − mean), zero beyond the segments' end.
+// a must be no longer than the plan; b is nil (zero) or as long as a; a nil window
+// is ones.
+func (p *Plan) Pack(dst Packed, a, b, wa, wb []float64, mean float64) {
 	re, im := p.split(dst)
 	if len(a) > p.n || b != nil && len(b) != len(a) {
 		panic("fourier: segments must be of equal length, at most the plan's")
 	}
-	fill(re, a, wa)
-	fill(im, b, wb)
+	fill(re, a, wa, mean)
+	fill(im, b, wb, mean)
 }
 
-func fill(dst, x, w []float64) {
+func fill(dst, x, w []float64, mean float64) {
 	if w == nil {
-		copy(dst, x)
+		for i, v := range x {
+			dst[i] = v - mean
+		}
 	} else {
-		multiply(dst[:len(x)], x, w[:len(x)])
+		weigh(dst[:len(x)], x, w[:len(x)], mean)
 	}
 	clear(dst[len(x):])
 }

@@ -65,10 +65,10 @@ func last16Portable(re, im, twiddles []float64) {
 	}
 }
 
-// multiplyPortable sets dst to x·w.
-func multiplyPortable(dst, x, w []float64) {
+// weighPortable sets dst to (x − mean)·w.
+func weighPortable(dst, x, w []float64, mean float64) {
 	w, dst = w[:len(x)], dst[:len(x)]
 	for i, v := range x {
-		dst[i] = v * w[i]
+		dst[i] = (v - mean) * w[i]
 	}
 }

@@ -126,9 +126,9 @@ func (d *Design) NewScratch() *Scratch {
 // Transforms writes the tapered transforms of every segment of x into dst, item
 // by item (segment-major, then taper), each with Bins values, scaled so that the
 // mean of |value|² over items is the two-sided spectral density in (unit of
-// x)²/Hz. A nil dst is allocated. The mean of x should have been removed over
-// the whole recording, never per segment.
-func (d *Design) Transforms(dst []complex128, x []float64, s *Scratch) []complex128 {
+// x)²/Hz. A nil dst is allocated. mean is subtracted from x: the mean over the
+// whole recording, never of a segment.
+func (d *Design) Transforms(dst []complex128, x []float64, mean float64, s *Scratch) []complex128 {
 	items := d.Items(len(x))
 	if dst == nil {
 		dst = make([]complex128, items*d.bins)
@@ -145,9 +145,9 @@ func (d *Design) Transforms(dst []complex128, x []float64, s *Scratch) []complex
 	for item := 0; item < items; item += 2 {
 		a := dst[item*d.bins : (item+1)*d.bins]
 		if item+1 < items {
-			d.plan.Pack(s.packed, segment(item), segment(item+1), d.tapers[item%k], d.tapers[(item+1)%k])
+			d.plan.Pack(s.packed, segment(item), segment(item+1), d.tapers[item%k], d.tapers[(item+1)%k], mean)
 		} else {
-			d.plan.Pack(s.packed, segment(item), nil, d.tapers[item%k], nil)
+			d.plan.Pack(s.packed, segment(item), nil, d.tapers[item%k], nil, mean)
 		}
 		b := s.spare
 		if item+1 < items {

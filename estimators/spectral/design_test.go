@@ -32,7 +32,7 @@ func TestWelchEqualsSciPy(t *testing.T) {
 	require.NoError(t, err)
 	require.Equal(t, len(g.Freq), d.Bins())
 	s := d.NewScratch()
-	zx, zy := d.Transforms(nil, g.X, s), d.Transforms(nil, g.Y, s)
+	zx, zy := d.Transforms(nil, g.X, 0, s), d.Transforms(nil, g.Y, 0, s)
 	sxx, syy, sxy := make([]float64, d.Bins()), make([]float64, d.Bins()), make([]complex128, d.Bins())
 	d.AddAuto(sxx, zx)
 	d.AddAuto(syy, zy)
@@ -90,7 +90,7 @@ func TestSmoothedPeriodogramEqualsR(t *testing.T) {
 	transform := func(name string) []complex128 {
 		x, err := centred(name, series[name])
 		require.NoError(t, err)
-		return d.Transforms(nil, x, s)
+		return d.Transforms(nil, x, 0, s)
 	}
 	zm, zf := transform("mdeaths"), transform("fdeaths")
 	full := func(z []complex128, k int) complex128 { // by conjugate symmetry, circular
@@ -134,7 +134,7 @@ func TestTransformsAgainstDirectSum(t *testing.T) {
 	for i := range dirty {
 		dirty[i] = cmplx.NaN()
 	}
-	z := d.Transforms(dirty, x, d.NewScratch())
+	z := d.Transforms(dirty, x, 0, d.NewScratch())
 	assert.Equal(t, before, x, "inputs are not changed")
 	for item := range d.Items(len(x)) {
 		taper := d.tapers[item%4]

@@ -84,8 +84,8 @@ func rate(d *Design, x, y []float64, o Options, warnings []estimators.Warning) e
 	all := fresh()
 	parts := make([]spectra, segments)
 	for i := range parts {
-		zx := d.Transforms(nil, x[i*d.length:(i+1)*d.length], scratch)
-		zy := d.Transforms(nil, y[i*d.length:(i+1)*d.length], scratch)
+		zx := d.Transforms(nil, x[i*d.length:(i+1)*d.length], 0, scratch)
+		zy := d.Transforms(nil, y[i*d.length:(i+1)*d.length], 0, scratch)
 		parts[i] = fresh()
 		d.AddAuto(parts[i].sxx, zx)
 		d.AddAuto(parts[i].syy, zy)

@@ -24,7 +24,7 @@ func OwnBand(stretches [][]float64, dt float64) (float64, error) {
 	scratch := design.NewScratch()
 	power := make([]float64, design.Bins())
 	for _, x := range stretches {
-		design.AddAuto(power, design.Transforms(nil, x, scratch))
+		design.AddAuto(power, design.Transforms(nil, x, 0, scratch))
 	}
 	peak := 0.0
 	for _, p := range power {

@@ -14,7 +14,7 @@ func main() {
 	radix2()
 	radix4()
 	last16()
-	multiply()
+	weigh()
 	Generate()
 }
 
@@ -167,19 +167,22 @@ func last16() {
 	RET()
 }
 
-func multiply() {
-	TEXT("multiplyAVX2", NOSPLIT, "func(dst, x, w *float64, n int)")
-	Doc("multiplyAVX2 sets dst to x·w; n is a positive multiple of 4.")
+func weigh() {
+	TEXT("weighAVX2", NOSPLIT, "func(dst, x, w *float64, n int, mean float64)")
+	Doc("weighAVX2 sets dst to (x − mean)·w; n is a positive multiple of 4.")
 	dst, x, w, n := Load(Param("dst"), GP64()), Load(Param("x"), GP64()), Load(Param("w"), GP64()), Load(Param("n"), GP64())
-	Label("multiplyloop")
-	v := load(Mem{Base: x})
+	one := Load(Param("mean"), XMM())
+	mean := YMM()
+	VBROADCASTSD(one, mean)
+	Label("weighloop")
+	v := sub(load(Mem{Base: x}), mean)
 	VMULPD(Mem{Base: w}, v, v)
 	VMOVUPD(v, Mem{Base: dst})
 	for _, p := range []Register{dst, x, w} {
 		ADDQ(Imm(32), p)
 	}
 	SUBQ(Imm(4), n)
-	JNZ(LabelRef("multiplyloop"))
+	JNZ(LabelRef("weighloop"))
 	VZEROUPPER()
 	RET()
 }
