@@ -52,7 +52,7 @@ func poisson(rng *rand.Rand, rate, from, to float64) []float64 {
 	return out
 }
 
-func inspectIt(t *testing.T, src Source) *Document {
+func inspectIt(t *testing.T, src bench.Source) *Document {
 	doc, err := Run(context.Background(), bench.Defaults(), src, "test")
 	require.NoError(t, err)
 	return doc

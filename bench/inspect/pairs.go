@@ -59,7 +59,7 @@ type arrival struct {
 // newPairCounter chooses the units and the share of time to compare: the units
 // with most spikes and evenly spread pieces, where all would take too long. Pieces
 // of one cell's trials are not compared: their input is the same.
-func newPairCounter(src Source, bursts bench.BurstsPart) *pairCounter {
+func newPairCounter(src bench.Source, bursts bench.BurstsPart) *pairCounter {
 	c := &pairCounter{limit: nanoseconds(bursts.MaxISIMS)}
 	units := src.Units()
 	if src.Meaning() == scenarios.TrialsAsCells || len(units) < 2 {
@@ -162,7 +162,7 @@ func (c *pairCounter) compare(trains [][]int64, next []int, from, to int64) {
 }
 
 // check tests all pairs.
-func (c *pairCounter) check(src Source) PairCheck {
+func (c *pairCounter) check(src bench.Source) PairCheck {
 	out := PairCheck{Units: len(c.units), Seconds: bench.Number(c.seconds), Found: []Pair{}}
 	n := len(c.units)
 	if n < 2 || c.seconds == 0 {
@@ -214,7 +214,7 @@ func (c *pairCounter) check(src Source) PairCheck {
 // follower tests whether b follows a as the later spikes of a burst follow its
 // first: far more often than expected, and than the other way round. Common drive
 // and coupling without a direction raise both ways alike.
-func (c *pairCounter) follower(src Source, a, b int, drive, tests, chance float64) (Pair, bool) {
+func (c *pairCounter) follower(src bench.Source, a, b int, drive, tests, chance float64) (Pair, bool) {
 	n := len(c.units)
 	found, back := float64(c.follow[a*n+b]), float64(c.follow[b*n+a])
 	lopsided := (found - back) / math.Sqrt(math.Max(found+back, 1))
@@ -225,12 +225,12 @@ func (c *pairCounter) follower(src Source, a, b int, drive, tests, chance float6
 }
 
 // copied tests whether a and b share spikes.
-func (c *pairCounter) copied(src Source, a, b int, drive, tests, chance float64) (Pair, bool) {
+func (c *pairCounter) copied(src bench.Source, a, b int, drive, tests, chance float64) (Pair, bool) {
 	n := len(c.units)
 	return c.pair(src, "copy", a, b, float64(c.copies[a*n+b]+c.copies[b*n+a]), chance*drive, tests, leastCopied)
 }
 
-func (c *pairCounter) pair(src Source, kind string, a, b int, found, expected, tests, least float64) (Pair, bool) {
+func (c *pairCounter) pair(src bench.Source, kind string, a, b int, found, expected, tests, least float64) (Pair, bool) {
 	rarer := float64(min(c.spikes[a], c.spikes[b]))
 	if found < 5 || found < leastRatio*expected || (found-expected)/rarer < least || poissonTail(found, expected)*tests > pairAlpha {
 		return Pair{}, false
@@ -253,7 +253,7 @@ func poissonTail(k, mean float64) float64 {
 
 // alone is the share of coincidences of a pair in which the first unit does not
 // spike again within the threshold.
-func (c *pairCounter) alone(src Source, p *Pair) bench.Number {
+func (c *pairCounter) alone(src bench.Source, p *Pair) bench.Number {
 	var a, b int
 	for _, u := range c.units {
 		switch src.Units()[u].Name {

@@ -12,7 +12,7 @@ import (
 
 // joined are the samples of a stream, trial after trial; one trial only where
 // all repeat the same input.
-func joined(src Source, stream int) (all []float64, stretches [][]float64) {
+func joined(src bench.Source, stream int) (all []float64, stretches [][]float64) {
 	for t := range src.Trials() {
 		x := src.StreamSamples(stream, t)
 		stretches = append(stretches, x)
@@ -29,7 +29,7 @@ func joined(src Source, stream int) (all []float64, stretches [][]float64) {
 	return all, stretches
 }
 
-func (doc *Document) describeStreams(ctx context.Context, src Source) error {
+func (doc *Document) describeStreams(ctx context.Context, src bench.Source) error {
 	doc.Streams, doc.Correlations, doc.Recording.Streams = []Stream{}, []StreamCorrelation{}, []string{}
 	var all [][]float64
 	for s, stream := range src.Streams() {
@@ -140,7 +140,7 @@ func spectrum(stretches [][]float64, dt, bandHz float64) []Power {
 
 // stretches is the number of stretches that rates are counted in, so that each
 // is long against the slowest stream that drives them.
-func (doc *Document) stretches(src Source) int {
+func (doc *Document) stretches(src bench.Source) int {
 	const most, fewest = 80, 20
 	longest := 1.0 / most
 	for s := range src.Streams() {

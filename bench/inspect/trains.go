@@ -21,7 +21,7 @@ const binsPerDecade = 10
 
 // reader sums what the trains say.
 type reader struct {
-	src     Source
+	src     bench.Source
 	rules   []decoders.BurstRule
 	bursts  bench.BurstsPart
 	edges   []int64 // of the interval histogram, ns
@@ -39,7 +39,7 @@ type reader struct {
 // intervalSums are the moments of a unit's intervals in ms.
 type intervalSums struct{ n, sum, squares float64 }
 
-func newReader(src Source, rules []decoders.BurstRule, bursts bench.BurstsPart, stretches int) *reader {
+func newReader(src bench.Source, rules []decoders.BurstRule, bursts bench.BurstsPart, stretches int) *reader {
 	r := &reader{src: src, rules: rules, bursts: bursts}
 	for _, t := range src.Trials() {
 		r.starts = append(r.starts, r.total)

@@ -22,7 +22,7 @@ const (
 )
 
 // warn lists everything suspicious: how bad it is, and what to do.
-func (doc *Document) warn(src Source) {
+func (doc *Document) warn(src bench.Source) {
 	doc.warnUnits()
 	doc.warnBursts()
 	doc.warnPairs(src)
@@ -83,7 +83,7 @@ func (doc *Document) warnBursts() {
 	}
 }
 
-func (doc *Document) warnPairs(src Source) {
+func (doc *Document) warnPairs(src bench.Source) {
 	p := doc.Pairs
 	if src.Meaning() == scenarios.TrialsAsCells && len(doc.Rows) > 1 {
 		doc.say(estimators.Note, "unit pairs", "", "pairs are not compared: trials of one cell under the same input coincide by nature")

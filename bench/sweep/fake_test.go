@@ -9,6 +9,7 @@ import (
 
 	"codeassay/bench"
 	"codeassay/decoders"
+	"codeassay/estimators"
 	"codeassay/scenarios"
 )
 
@@ -27,6 +28,7 @@ func (f *fake) Trials() []scenarios.Trial                     { return f.trials 
 func (f *fake) Train(_ []int64, unit, trial int) []int64      { return f.trains[unit*len(f.trials)+trial] }
 func (f *fake) Labels(unit, trial int) []scenarios.EventLabel { return nil }
 func (f *fake) Streams() []scenarios.Stream                   { return f.streams }
+func (f *fake) Notes() []estimators.Warning                   { return nil }
 func (f *fake) Dt() float64                                   { return 0.001 }
 func (f *fake) Meaning() scenarios.TrialMeaning               { return f.meaning }
 func (f *fake) StreamSamples(s, trial int) []float64 {

@@ -30,7 +30,7 @@ type plan struct {
 	settings bench.Settings
 	warnings []estimators.Warning
 
-	src     Source
+	src     bench.Source
 	binNs   int64
 	bin     float64 // s
 	rules   []decoders.BurstRule
@@ -56,7 +56,7 @@ type plan struct {
 
 // newPlan settles a sweep. visible codes are shown; the plan may add the spike
 // and event rate, which pairs are held against.
-func newPlan(study bench.Study, visible []decoders.Code, pairs [][2]int, src Source) (*plan, error) {
+func newPlan(study bench.Study, visible []decoders.Code, pairs [][2]int, src bench.Source) (*plan, error) {
 	p := &plan{src: src, frozen: src.Meaning() == scenarios.FrozenRepeats}
 	p.binNs = int64(math.Round(study.Sweep.BinMS * 1e6))
 	p.bin = float64(p.binNs) * 1e-9
@@ -69,7 +69,7 @@ func newPlan(study bench.Study, visible []decoders.Code, pairs [][2]int, src Sou
 		p.settings.Codes = []bench.CodePart{}
 	}
 	var err error
-	if p.rules, err = unitRules(study.Bursts, src.Units()); err != nil {
+	if p.rules, err = study.Bursts.UnitRules(src.Units()); err != nil {
 		return nil, err
 	}
 	if p.layout.Sizes, err = sizes(study.Sweep.Cells, p.layout.Cells); err != nil {
@@ -96,30 +96,6 @@ func newPlan(study bench.Study, visible []decoders.Code, pairs [][2]int, src Sou
 	p.noteSampling()
 	p.noteFrozen()
 	return p, nil
-}
-
-// unitRules is the burst rule of every unit: the study's, with the unit's own
-// limits in their place where the units table gives them.
-func unitRules(part bench.BurstsPart, units []scenarios.Unit) ([]decoders.BurstRule, error) {
-	ns := func(ms float64) int64 { return int64(math.Round(ms * 1e6)) }
-	rules := make([]decoders.BurstRule, len(units))
-	for i, u := range units {
-		rules[i] = decoders.BurstRule{MaxISI: ns(part.MaxISIMS), MinSpikes: part.MinSpikes,
-			FirstISI: ns(part.FirstISIMS), MinSilence: ns(part.MinSilenceMS)}
-		if u.MaxISI >= 0 {
-			rules[i].MaxISI = u.MaxISI
-		}
-		if u.FirstISI >= 0 {
-			rules[i].FirstISI = u.FirstISI
-		}
-		if u.MinSilence >= 0 {
-			rules[i].MinSilence = u.MinSilence
-		}
-		if err := rules[i].Validate(); err != nil {
-			return nil, fmt.Errorf("unit %s: %w", u.Name, err)
-		}
-	}
-	return rules, nil
 }
 
 // sizes are the ensemble sizes asked for, rising and without repeats; by default

@@ -2,7 +2,6 @@ package sweep
 
 import (
 	"context"
-	"fmt"
 	"slices"
 	"sync"
 	"sync/atomic"
@@ -18,15 +17,12 @@ import (
 // longer sweeps take more passes over the blocks.
 const batchBytes = 192 << 20
 
-// cellGroups is the number of groups of cells that are left out in turn.
-const cellGroups = 6
-
 // Request is a sweep to be run.
 type Request struct {
 	Study    bench.Study
 	Codes    []decoders.Code
 	Pairs    [][2]int // into Codes
-	Source   Source
+	Source   bench.Source
 	Workers  int                   // 0: one
 	Progress func(done, total int) // may be nil; called from one goroutine at a time
 }
@@ -221,111 +217,6 @@ func (g *engine) step(n int) {
 	g.progress(min(done, g.total), g.total)
 }
 
-// keep finishes jobs of sizes into pieces and releases their sums.
-func (g *engine) keep(ctx context.Context, out *bench.Outcome, jobs []*job) error {
-	for _, j := range jobs {
-		values := make([]bench.Values, len(j.snapshots))
-		piece := g.piece(j, values)
-		measured := len(g.windows) > 0
-		// All draws of a size share one null law: the more draws, the fewer each needs.
-		perDraw := shifts
-		if j.draw > 0 {
-			perDraw = max(4, shifts/g.layout.Draws)
-		}
-		if measured {
-			piece.NullMean, piece.NullVar = make([][]float64, len(values)), make([][]float64, len(values))
-		}
-		err := g.parallel(ctx, len(j.snapshots), func(w, i int) {
-			values[i] = g.finish[w].values(&j.snapshots[i])
-			if measured {
-				piece.NullMean[i], piece.NullVar[i] = g.finish[w].shiftNull(&j.snapshots[i], g.root.Child("null", j.draw, i), perDraw)
-			}
-		})
-		if err != nil {
-			return err
-		}
-		j.snapshots = nil
-		out.Pieces = append(out.Pieces, piece)
-	}
-	return nil
-}
-
-// measureCells measures, size by size, how the information varies with the cells
-// that happened to be recorded, where the draws do not tell that already.
-func (g *engine) measureCells(ctx context.Context, out *bench.Outcome) error {
-	var jobs []*job
-	flush := func() error {
-		if err := g.run(ctx, jobs); err != nil {
-			return err
-		}
-		pieces := make([]bench.CellPiece, len(jobs))
-		err := g.parallel(ctx, len(jobs), func(w, i int) { pieces[i] = g.finish[w].cellPiece(jobs[i]) })
-		out.Cells = append(out.Cells, pieces...)
-		jobs = nil
-		return err
-	}
-	for i, n := range g.layout.Sizes {
-		draw := 1
-		if n == g.layout.Cells {
-			draw = 0
-		}
-		if g.layout.CellsMeasured(i) != bench.ByGroups {
-			continue
-		}
-		groups := min(cellGroups, n)
-		jobs = append(jobs, g.deletionJob(g.store, g.order(draw), i, groups))
-		if len(jobs) == g.cellBatch() {
-			if err := flush(); err != nil {
-				return err
-			}
-		}
-	}
-	if len(jobs) == 0 {
-		return nil
-	}
-	return flush()
-}
-
-// cellSizes is the number of sizes that measureCells visits.
-func (g *engine) cellSizes() int {
-	sizes := 0
-	for i := range g.layout.Sizes {
-		if g.layout.CellsMeasured(i) == bench.ByGroups {
-			sizes++
-		}
-	}
-	return sizes
-}
-
-// cellBatch is the number of sizes whose cells are measured side by side.
-func (g *engine) cellBatch() int { return max(1, batchBytes/((1+cellGroups)*g.snapshotBytes())) }
-
-// fewestForChance is the number of cells below which events cannot be dealt to
-// other cells often enough for their trains to lose the dead time.
-const fewestForChance = 8
-
-// measureChance ranks the burst-free surrogate of the full ensemble.
-func (g *engine) measureChance(ctx context.Context, out *bench.Outcome) error {
-	if g.layout.Cells < fewestForChance {
-		g.warnings = append(g.warnings, estimators.Warning{Severity: estimators.Note, About: "chance",
-			Text:   fmt.Sprintf("no burst-free surrogate was ranked: it deals each event to another cell, and %d are too few for that; only the expected share of chance bursts is given", g.layout.Cells),
-			Remedy: fmt.Sprintf("at least %d cells", fewestForChance)})
-		return nil
-	}
-	var counts tally.Totals
-	for u := range g.layout.Cells {
-		counts = counts.Add(g.store.ChanceTotals(u, g.rules[u], g.totalS()))
-	}
-	j := &job{kind: chance, surrogate: g.root.Child("burst-free"), snapshots: []snapshot{g.newSnapshot(counts, g.layout.Cells)}}
-	if err := g.run(ctx, []*job{j}); err != nil {
-		return err
-	}
-	values := g.finish[0].values(&j.snapshots[0])
-	out.Chance = &values
-	out.ChanceSpikesPerS = j.snapshots[0].of.spikesPerS
-	return nil
-}
-
 // parallel calls do(worker, i) for i in [0, n), each worker with scratch of its
 // own. Results must go to places of their own, so that order does not matter.
 func (g *engine) parallel(ctx context.Context, n int, do func(worker, i int)) error {
@@ -345,67 +236,3 @@ func (g *engine) parallel(ctx context.Context, n int, do func(worker, i int)) er
 	wait.Wait()
 	return ctx.Err()
 }
-
-// describe adds what the outcome says of the recording and the settings.
-func (g *engine) describe(out *bench.Outcome) {
-	out.Layout = g.layout
-	out.Settings = g.settings
-	out.Settings.Chosen.CellGroups = cellGroups
-	out.Warnings = append(out.Warnings, g.warnings...)
-	var counts tally.Totals
-	chance := 0.0
-	seconds := 0.0
-	for _, trial := range g.src.Trials() {
-		seconds += float64(trial.Duration) * 1e-9
-	}
-	for u := range g.layout.Cells {
-		t := g.store.Totals(u)
-		counts = counts.Add(t)
-		chance += chanceBursts(g.rules[u].ChanceEvents(g.rules[u].PoissonRate(t.EventCount()/seconds))) * t.EventCount()
-	}
-	trains := counts.Trains()
-	events := counts.EventCount()
-	bursts := counts.BurstCount()
-	names := make([]string, len(g.layout.Streams))
-	copy(names, g.layout.Streams)
-	blocks := make([][]tally.Span, len(g.blocks))
-	for j, ids := range g.blocks {
-		for _, id := range ids {
-			blocks[j] = append(blocks[j], g.spans[id])
-		}
-	}
-	used := g.usedS(blocks)
-	out.Recording = bench.RecordingSummary{
-		Cells: g.layout.Cells, Trials: len(g.src.Trials()), TrialMeaning: string(g.src.Meaning()),
-		DurationS: bench.Number(seconds), UsedS: bench.Number(used), Spikes: int64(trains[0]),
-		Events: int64(events), Bursts: int64(bursts), Streams: names,
-		BurstFraction: ratio(bursts, events), ChanceBurstFraction: ratio(chance, events),
-	}
-	for s, lag := range g.lags {
-		out.DelaysMS = append(out.DelaysMS, float64(lag)*g.bin*1e3)
-		out.Settings.Chosen.Delays = append(out.Settings.Chosen.Delays, bench.StreamDelay{Stream: g.layout.Streams[s], DelayMS: bench.Number(out.DelaysMS[s])})
-	}
-	if events == 0 {
-		out.Warnings = append(out.Warnings, estimators.Warning{Severity: estimators.Weak, About: "recording",
-			Text: "there are no spikes in the recording", Remedy: "check the files"})
-	}
-}
-
-// chanceBursts is the share of bursts among events, by their sizes.
-func chanceBursts(events [4]float64) float64 {
-	bursts := events[1] + events[2] + events[3]
-	if bursts == 0 {
-		return 0
-	}
-	return bursts / (events[0] + bursts)
-}
-
-func ratio(a, b float64) bench.Number {
-	if b == 0 {
-		return bench.None
-	}
-	return bench.Number(a / b)
-}
-
-// significance is the level of the tests inside a sweep.
-func significance(confidence float64) float64 { return 1 - confidence }

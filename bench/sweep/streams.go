@@ -1,23 +1,6 @@
 package sweep
 
-import (
-	"math"
-
-	"codeassay/scenarios"
-)
-
-// Source is the recording that a sweep reads; scenarios.Recording is one, a
-// generator may be another.
-type Source interface {
-	Units() []scenarios.Unit
-	Trials() []scenarios.Trial
-	Train(dst []int64, unit, trial int) []int64
-	Labels(unit, trial int) []scenarios.EventLabel
-	Streams() []scenarios.Stream
-	StreamSamples(stream, trial int) []float64
-	Dt() float64
-	Meaning() scenarios.TrialMeaning
-}
+import "math"
 
 // onBins brings samples of width dt onto bins of width bin seconds: the mean of
 // the samples in a bin where they are finer, a straight line between their

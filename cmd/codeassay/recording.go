@@ -4,28 +4,16 @@ import (
 	"codeassay/bench"
 	"codeassay/bench/catalog"
 	"codeassay/bench/rank"
-	"codeassay/bench/sweep"
-	"codeassay/estimators"
 	"codeassay/scenarios"
 	"codeassay/scenarios/files"
 	"codeassay/scenarios/synthetic"
 )
 
-// recording is what commands read: files, or a scenario that generates as it is
-// read.
-type recording interface {
-	sweep.Source
-	Notes() []estimators.Warning
-}
-
-var (
-	_ recording = (*scenarios.Recording)(nil)
-	_ recording = (*synthetic.PairedDrive)(nil)
-)
+var _ bench.Source = (*synthetic.PairedDrive)(nil)
 
 // openRecording opens the files or the scenario that a study names; the scenario
 // is nil for files.
-func openRecording(study bench.Study) (recording, *synthetic.PairedDrive, error) {
+func openRecording(study bench.Study) (bench.Source, *synthetic.PairedDrive, error) {
 	if study.Recording.Scenario != "" {
 		p, err := catalog.Scenario(study)
 		if err != nil {

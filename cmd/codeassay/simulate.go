@@ -100,7 +100,7 @@ func runSimulate(cmd *cobra.Command, env *environment, flags *simulateFlags, arg
 
 // writeSimulated writes the recording, then the truth, and last the study, which
 // is there only when all it names is.
-func writeSimulated(cmd *cobra.Command, flags *simulateFlags, study bench.Study, source recording, scenario *synthetic.PairedDrive, truth *truthDocument) error {
+func writeSimulated(cmd *cobra.Command, flags *simulateFlags, study bench.Study, source bench.Source, scenario *synthetic.PairedDrive, truth *truthDocument) error {
 	data := []string{"spikes.csv", "streams.csv"}
 	if flags.container == "npz" {
 		data = []string{"recording.npz"}
