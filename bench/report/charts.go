@@ -245,33 +245,49 @@ func (v *view) bandFigures() []figure {
 }
 
 // inputFigures are bits/s against the streams' bandwidth at the largest size.
+// Where each bandwidth has one band, its streams' own, that band goes with it.
 func (v *view) inputFigures() []figure {
 	var out []figure
 	if len(v.inputs) < 2 {
 		return nil
 	}
+	inputs := slices.Clone(v.inputs)
+	slices.Sort(inputs)
 	done := map[scope]bool{}
 	for _, g := range v.of(v.primary, false) {
+		own := len(v.bandsOf(g.scope)) == 1
 		key := g.scope
 		key.input = 0
+		where := bandText(g.low, g.high)
+		if own {
+			key.low, key.high = 0, 0
+			where = "from 0 Hz to that bandwidth"
+		}
 		if done[key] {
 			continue
 		}
 		done[key] = true
-		inputs := slices.Clone(v.inputs)
-		slices.Sort(inputs)
 		f := figure{name: slug("bits-by-input-bandwidth", g.stream), x: title{before: "Bandwidth of the streams (Hz)"}, y: aboutAxis(g.stream), ticksX: inputs,
-			step: 2, about: fmt.Sprintf("Bits per second about %s, %s, of every code of %s, against the bandwidth of the streams.", plain(g.stream), bandText(g.low, g.high), counted(int64(g.largest()), "cell"))}
-		if len(v.bandsOf(g.scope)) > 1 {
+			step: 2, about: fmt.Sprintf("Bits per second about %s, %s, of every code of %s, against the bandwidth of the streams.", plain(g.stream), where, counted(int64(g.largest()), "cell"))}
+		if !own {
 			f.name, f.x.after = slug(f.name, bandText(g.low, g.high)), ", "+bandText(g.low, g.high)
 		}
-		v.codesAgainst(&f, g.codes(), inputs, true, func(code string, i int) *bench.Row {
-			s := key
-			s.input = inputs[i]
-			if like := v.like(s); like != nil {
-				return like.find(code, like.largest())
+		at := make([]*group, len(inputs))
+		for _, like := range v.groups {
+			s := like.scope
+			s.input = 0
+			if own {
+				s.low, s.high = 0, 0
 			}
-			return nil
+			if s == key {
+				at[slices.Index(inputs, like.input)] = like
+			}
+		}
+		v.codesAgainst(&f, g.codes(), inputs, true, func(code string, i int) *bench.Row {
+			if at[i] == nil {
+				return nil
+			}
+			return at[i].find(code, at[i].largest())
 		})
 		out = append(out, f)
 	}
