@@ -99,7 +99,7 @@ const fewestForChance = 8
 func (g *engine) measureChance(ctx context.Context, out *bench.Outcome) error {
 	if g.layout.Cells < fewestForChance {
 		g.warnings = append(g.warnings, estimators.Warning{Severity: estimators.Note, About: "chance",
-			Text:   fmt.Sprintf("no burst-free surrogate was ranked: it deals each event to another cell, and %d are too few for that; only the expected share of chance bursts is given", g.layout.Cells),
+			Text:   fmt.Sprintf("no burst-free surrogate was ranked: it deals each event to another cell, which %s too few for; only the expected share of chance bursts is given", plural(g.layout.Cells)),
 			Remedy: fmt.Sprintf("at least %d cells", fewestForChance)})
 		return nil
 	}
@@ -115,4 +115,11 @@ func (g *engine) measureChance(ctx context.Context, out *bench.Outcome) error {
 	out.Chance = &values
 	out.ChanceSpikesPerS = j.snapshots[0].of.spikesPerS
 	return nil
+}
+
+func plural(cells int) string {
+	if cells == 1 {
+		return "1 cell is"
+	}
+	return fmt.Sprintf("%d cells are", cells)
 }

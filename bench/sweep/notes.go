@@ -51,6 +51,11 @@ func (p *plan) noteDraws() {
 	}
 }
 
+// fewestIndependent is the number of independent values of a stream below which
+// its warnings and intervals rest on too little: some three for each of thirty
+// jackknife blocks.
+const fewestIndependent = 100.0
+
 // testStreams says when a stream is not Gaussian or not steady.
 func (p *plan) testStreams() []estimators.Warning {
 	var warnings []estimators.Warning
@@ -73,6 +78,11 @@ func (p *plan) testStreams() []estimators.Warning {
 				Text: fmt.Sprintf("the stream is not Gaussian (skewness %.2f, excess kurtosis %.2f): the coherence rate is then no lower bound on the information about it, only what a linear reader of a Gaussian stream with this spectrum would have",
 					shape.Skewness, shape.ExcessKurtosis),
 				Remedy: "read the plug-in rows beside it, or drive with a Gaussian stream"})
+		}
+		if n := stationarity.Independent(x); n < fewestIndependent {
+			warnings = append(warnings, estimators.Warning{Severity: estimators.Weak, About: name,
+				Text:   fmt.Sprintf("the stream is slow: in %.4g s it takes %.3g independent values, too few to tell whether it is steady or Gaussian, and intervals rest on as few", p.totalS(), n),
+				Remedy: fmt.Sprintf("record ≥ %.0f s more", math.Ceil(p.totalS()*(fewestIndependent/n-1)))})
 		}
 		if change := stationarity.StreamDrift(x); change.PValue < 0.001 {
 			warnings = append(warnings, estimators.Warning{Severity: estimators.Weak, About: name,
@@ -120,6 +130,14 @@ func (p *plan) noteSampling() {
 			Text: fmt.Sprintf("%d windows of %.3g ms give %.2g samples a cell of the %d × %d table: too thin for the plug-in information to be trusted",
 				w.total, float64(w.bins)*p.bin*1e3, perCell, w.levels, w.levels),
 			Remedy: fmt.Sprintf("record ≥ %.0f s more", math.Ceil(more))})
+	}
+}
+
+// noteCells says that one cell is no ensemble.
+func (p *plan) noteCells() {
+	if p.layout.Cells == 1 {
+		p.warnings = append(p.warnings, estimators.Warning{Severity: estimators.Note, About: "cells",
+			Text: "the recording has one cell: its numbers say nothing about an ensemble, nor how they vary between cells", Remedy: "more cells, or trials = \"cells\" for repeats of one input"})
 	}
 }
 

@@ -91,6 +91,7 @@ func newPlan(study bench.Study, visible []decoders.Code, pairs [][2]int, src ben
 	}
 	p.layRows()
 	p.layDrift()
+	p.noteCells()
 	p.noteDraws()
 	p.notePower()
 	p.noteSampling()
