@@ -243,7 +243,7 @@ func TestDemoIsSound(t *testing.T) {
 		for _, w := range doc.Warnings {
 			assert.Equal(t, estimators.Note, w.Severity, w.Text)
 		}
-		assert.InDelta(t, 0.25, float64(doc.Recording.BurstFraction), 0.02)
+		assert.InDelta(t, 0.3, float64(doc.Recording.BurstFraction), 0.02)
 		assert.Equal(t, bench.Number(20), doc.Streams[0].BandHz)
 		assert.True(t, doc.Streams[0].BandKnown)
 	}

@@ -19,8 +19,8 @@ type Settings struct {
 	DurationS    float64    // 300
 	EventRateHz  float64    // events a second of each cell; 6
 	EventDepth   float64    // relative modulation of the hazard by one standard deviation of soma; 0.25
-	BurstShare   float64    // share of events that are bursts; 0.25
-	BurstDepth   float64    // change of that share by one standard deviation of dendrite; 0.07
+	BurstShare   float64    // share of events that are bursts; 0.3
+	BurstDepth   float64    // change of that share by one standard deviation of dendrite; 0.09
 	DeadTimeMS   float64    // after each event; 30
 	BandwidthsHz [2]float64 // cut-offs of soma and dendrite; 20, 20
 	Seed         seed.Seed
@@ -50,8 +50,8 @@ func (s Settings) withDefaults() Settings {
 	def(&s.DurationS, 300)
 	def(&s.EventRateHz, 6)
 	def(&s.EventDepth, 0.25)
-	def(&s.BurstShare, 0.25)
-	def(&s.BurstDepth, 0.07)
+	def(&s.BurstShare, 0.3)
+	def(&s.BurstDepth, 0.09)
 	def(&s.DeadTimeMS, 30)
 	def(&s.BandwidthsHz[0], 20)
 	def(&s.BandwidthsHz[1], 20)
@@ -72,7 +72,7 @@ func (s Settings) validate() error {
 		return fmt.Errorf("event_depth = %g: from 0 to 0.3; beyond, the hazard would be cut off at zero too often for the closed form", s.EventDepth)
 	case !(s.BurstShare > 0 && s.BurstShare < 1):
 		return fmt.Errorf("burst_share = %g: between 0 and 1", s.BurstShare)
-	case !(s.BurstDepth >= 0 && 3*s.BurstDepth <= math.Min(s.BurstShare, 1-s.BurstShare)):
+	case !(s.BurstDepth >= 0 && 3*s.BurstDepth <= math.Min(s.BurstShare, 1-s.BurstShare)+1e-12):
 		return fmt.Errorf("burst_depth = %g: from 0 to a third of the distance of burst_share = %g to 0 and 1; beyond, the share would be cut off too often for the closed form", s.BurstDepth, s.BurstShare)
 	case s.DeadTimeMS < 1e3*2*longestISI+15:
 		return fmt.Errorf("dead_time_ms = %g: at least %g, so that bursts stay apart by more than 15 ms", s.DeadTimeMS, 1e3*2*longestISI+15)

@@ -105,7 +105,7 @@ func TestTrainsAreAsStated(t *testing.T) {
 	want := p.Truth().rate * 60 * 100
 	// The streams make counts of all cells vary together, by far less than this.
 	assert.InEpsilon(t, want, events, 0.02)
-	assert.InDelta(t, 0.25, bursts/events, 0.01)
+	assert.InDelta(t, 0.3, bursts/events, 0.01)
 	assert.InDelta(t, 0.9, doublets/bursts, 4*math.Sqrt(.09/bursts))
 }
 
@@ -137,7 +137,7 @@ func TestSettingsOutsideTheRangeOfTruth(t *testing.T) {
 		"cells = -1: at least 1":       {Cells: -1},
 		"duration_s = 0.5: at least 1": {DurationS: 0.5},
 		"event_depth = 0.4: from 0 to 0.3; beyond, the hazard would be cut off at zero too often for the closed form":                                             {EventDepth: 0.4},
-		"burst_depth = 0.1: from 0 to a third of the distance of burst_share = 0.25 to 0 and 1; beyond, the share would be cut off too often for the closed form": {BurstDepth: 0.1},
+		"burst_depth = 0.11: from 0 to a third of the distance of burst_share = 0.3 to 0 and 1; beyond, the share would be cut off too often for the closed form": {BurstDepth: 0.11},
 		"dead_time_ms = 20: at least 29, so that bursts stay apart by more than 15 ms":                                                                            {DeadTimeMS: 20},
 		"event_rate_hz = 20: above 0, and with a dead time of 30 ms at most 13.3, so that cells are dead less than 40 % of the time":                              {EventRateHz: 20},
 		"bandwidths_hz = 300 (stream 2): above 0, at most 200":                                                                                                    {BandwidthsHz: [2]float64{20, 300}},
