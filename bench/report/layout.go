@@ -136,7 +136,7 @@ func (v *view) truth() []block {
 	}
 	text := fmt.Sprintf("%s of %s intervals hold the %s (%s).", count(int64(t.Held)), count(int64(t.Rows)), kind, good)
 	if t.Rows > 0 {
-		text += fmt.Sprintf(" %s would be expected of intervals that are right.", percent(v.confidence(), 3))
+		text += fmt.Sprintf(" %s would be expected on average of intervals that are right; rows share streams and spikes, so they hold or miss together.", percent(v.confidence(), 3))
 	}
 	return []block{heading{2, "Against the truth"}, paragraph{text: text}}
 }
