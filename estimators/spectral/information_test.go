@@ -153,18 +153,23 @@ func TestChooseLength(t *testing.T) {
 	assert.Empty(t, warnings)
 	// 30 s: 15 segments win over the smear, and that is said.
 	length, warnings = ChooseLength([]int{30000}, 0.001, 20, 2)
-	assert.Equal(t, 1024, length)
+	assert.Equal(t, 2000, length)
 	require.Len(t, warnings, 1)
 	assert.Contains(t, warnings[0].Text, "smeared away")
 	length, _ = ChooseLength([]int{20}, 0.001, 20, 2)
 	assert.Zero(t, length)
+	// 60 s at 40 Hz: 2.66 s does both, though no power of two of them does.
+	length, warnings = ChooseLength([]int{60000}, 0.001, 40, 2)
+	assert.Empty(t, warnings)
+	assert.InDelta(t, 2660, length, 10)
+	assert.LessOrEqual(t, SmearPerSD(2/(float64(length)*0.001), 40, 60), 0.2)
 	// Many short trials: a segment cannot exceed a trial.
 	short := make([]int, 300)
 	for i := range short {
 		short[i] = 2000
 	}
 	length, _ = ChooseLength(short, 0.001, 20, 2)
-	assert.Equal(t, 1024, length)
+	assert.Equal(t, 2000, length)
 }
 
 // The edge of a flat band is found to the width of its smearing, and does not

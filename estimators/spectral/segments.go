@@ -25,18 +25,20 @@ func SmearPerSD(halfWidthHz, bandHz, durationS float64) float64 {
 	return edgeLossBits * halfWidthHz * math.Ln2 / math.Sqrt(2*bandHz/durationS)
 }
 
-// ChooseLength picks the number of samples of a multitaper segment, a power of
-// two: the shortest whose predicted smear is at most 0.2 standard errors, but
-// never so long that fewer than MinSegments fit. Where both cannot hold, the
-// smear gives way and a warning says by how much. stretches are the lengths in
-// samples of the uninterrupted stretches of the recording. It returns 0 where
-// not even the shortest sensible segment fits.
+// ChooseLength picks the number of samples of a multitaper segment: the shortest
+// power of two whose predicted smear is at most 0.2 standard errors, but never so
+// long that fewer than MinSegments fit; where no power of two does both, the
+// length that comes nearest. Where both cannot hold, the smear gives way and a
+// warning says by how much. stretches are the lengths in samples of the
+// uninterrupted stretches of the recording. It returns 0 where not even the
+// shortest sensible segment fits.
 func ChooseLength(stretches []int, dt, bandHz, nw float64) (int, []estimators.Warning) {
 	total := 0
 	for _, n := range stretches {
 		total += n
 	}
 	durationS := float64(total) * dt
+	smearOf := func(length int) float64 { return SmearPerSD(nw/(float64(length)*dt), bandHz, durationS) }
 	best := 0
 	for length := 16; length <= 1<<20; length *= 2 {
 		if countSegments(stretches, length) < MinSegments && best != 0 {
@@ -46,16 +48,29 @@ func ChooseLength(stretches []int, dt, bandHz, nw float64) (int, []estimators.Wa
 			break
 		}
 		best = length
-		if SmearPerSD(nw/(float64(length)*dt), bandHz, durationS) <= 0.2 {
+		if smearOf(length) <= 0.2 {
 			break
+		}
+	}
+	if best != 0 && smearOf(best) > 0.2 {
+		// Between this power of two and the next: what the smear asks for (it
+		// falls as 1/length), as far as enough segments fit.
+		wished := int(math.Ceil(float64(best) * smearOf(best) / 0.2))
+		for low := best; low < wished; {
+			mid := (low + wished + 1) / 2
+			if countSegments(stretches, mid) >= MinSegments {
+				low, best = mid, mid
+			} else {
+				wished = mid - 1
+			}
 		}
 	}
 	if best == 0 {
 		return 0, nil
 	}
 	var warnings []estimators.Warning
-	smear := SmearPerSD(nw/(float64(best)*dt), bandHz, durationS)
-	if smear > 0.2 {
+	smear := smearOf(best)
+	if smear > 0.2+1e-9 {
 		severity := estimators.Note
 		if smear > 1 {
 			severity = estimators.Weak
