@@ -56,6 +56,9 @@ func (p *plan) noteDraws() {
 // jackknife blocks.
 const fewestIndependent = 100.0
 
+// testValues bounds the values of a stream that are tested.
+const testValues = 1 << 14
+
 // testStreams says when a stream is not Gaussian or not steady.
 func (p *plan) testStreams() []estimators.Warning {
 	var warnings []estimators.Warning
@@ -63,9 +66,10 @@ func (p *plan) testStreams() []estimators.Warning {
 		if p.frozen {
 			trials = trials[:1]
 		}
-		// Every sample of a slow stream says little more than its neighbours: a
-		// few to a period of the band's edge keep the shape and cost far less.
-		step := max(1, int(1/(4*p.settings.Chosen.Bands[s].High)/p.bin))
+		// Every sample of a slow stream says little more than its neighbours, and
+		// thousands of values are enough to tell their shape: a few to a period of
+		// the band's edge, and no more than testValues.
+		step := max(1, int(1/(4*p.settings.Chosen.Bands[s].High)/p.bin), int(p.totalS()/p.bin/testValues))
 		var x []float64
 		for _, trial := range trials {
 			for i := 0; i < len(trial); i += step {
