@@ -86,9 +86,6 @@ func newDesign(length, hop int, tapers [][]float64, halfWidthHz, dt, highHz floa
 // Length is the samples of a segment.
 func (d *Design) Length() int { return d.length }
 
-// Hop is the samples between the starts of neighbouring segments.
-func (d *Design) Hop() int { return d.hop }
-
 // Bins is the number of frequencies kept, from 0 up.
 func (d *Design) Bins() int { return d.bins }
 
@@ -97,9 +94,6 @@ func (d *Design) Tapers() int { return len(d.tapers) }
 
 // Spacing is the distance of neighbouring frequencies in Hz.
 func (d *Design) Spacing() float64 { return 1 / (float64(d.plan.Len()) * d.dt) }
-
-// HalfWidth is the half-bandwidth over which the design smears a spectrum, in Hz.
-func (d *Design) HalfWidth() float64 { return d.halfWidthHz }
 
 // Segments is the number of segments in a stretch of n samples.
 func (d *Design) Segments(n int) int {
