@@ -209,6 +209,26 @@ func TestRunRefusesWhatCannotBe(t *testing.T) {
 	assert.ErrorContains(t, try(func(s *bench.Study) { s.Bursts.MaxISIMS = -1 }), "max_isi_ms = -1")
 }
 
+// Bands far below what the recording resolves are measured as well as they can
+// be, and what cannot be counted is left out and said.
+func TestBandsBelowTheRecordingsReach(t *testing.T) {
+	f := newFake(fakeSettings{cells: 4, seconds: 30, depth: 0.3, bursts: true, seed: 8})
+	for _, hz := range []float64{0.02, 0.001} {
+		study := fakeStudy()
+		study.Sweep.BandsHz = []bench.Band{{High: hz}}
+		out := run(t, f, study, 2, nil, "event-rate", "burst-fraction")
+		for _, key := range out.Layout.Rows {
+			assert.True(t, out.Layout.Estimators[key.Estimator].Spectral)
+		}
+		assert.False(t, math.IsNaN(value(t, out, bench.Single, 0, 0, 1)))
+		assert.True(t, slices.ContainsFunc(out.Warnings, func(w estimators.Warning) bool { return w.About == "plug-in" }))
+	}
+	study := fakeStudy()
+	study.Sweep.FractionWindowMS = 40000
+	_, err := Run(context.Background(), Request{Study: study, Codes: codesNamed("burst-fraction"), Source: f})
+	assert.EqualError(t, err, "[sweep] fraction_window_ms = 40000: at most 32767 (32767 bins)")
+}
+
 // One cell, no bursts: bursts never change, so they carry exactly nothing.
 func TestSilentCodesCarryNothing(t *testing.T) {
 	f := newFake(fakeSettings{cells: 1, seconds: 30, seed: 7})

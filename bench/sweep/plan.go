@@ -85,7 +85,9 @@ func newPlan(study bench.Study, visible []decoders.Code, pairs [][2]int, src ben
 	if err := p.chooseMethods(study.Estimate); err != nil {
 		return nil, err
 	}
-	p.chooseWindow(study)
+	if err := p.chooseWindow(study); err != nil {
+		return nil, err
+	}
 	if p.codes, err = newCodeBasis(visible, pairs, p.halo, study.Sweep.FractionPrior); err != nil {
 		return nil, err
 	}
@@ -215,13 +217,24 @@ func (p *plan) topHz() float64 {
 	return top
 }
 
+// longestWindow bounds the sliding window, in bins: sums over it must be exact.
+const longestWindow = 1<<15 - 1
+
 // chooseWindow settles the sliding window of ratio codes: at most 1/(4 f_c),
-// since a boxcar of length T has its first null at 1/T.
-func (p *plan) chooseWindow(study bench.Study) {
+// since a boxcar of length T has its first null at 1/T, and at most an eighth of
+// a block's shortest stretch.
+func (p *plan) chooseWindow(study bench.Study) error {
 	ms := study.Sweep.FractionWindowMS
 	p.halo = max(1, int(math.Round(ms*1e-3/p.bin)))
+	if p.halo > longestWindow {
+		return fmt.Errorf("[sweep] fraction_window_ms = %g: at most %.6g (%d bins)", ms, longestWindow*p.bin*1e3, longestWindow)
+	}
 	if ms == 0 {
-		p.halo = max(1, int(math.Floor(1/(4*p.topHz())/p.bin+1e-9)))
+		shortest := longestWindow * 8
+		for _, s := range p.spans {
+			shortest = min(shortest, s.Bins)
+		}
+		p.halo = max(1, min(int(math.Floor(1/(4*p.topHz())/p.bin+1e-9)), shortest/8))
 	}
 	p.settings.Sweep.FractionWindowMS = float64(p.halo) * p.bin * 1e3
 	if limit := 1 / (4 * p.topHz()); float64(p.halo)*p.bin > 1.5*limit {
@@ -230,6 +243,7 @@ func (p *plan) chooseWindow(study bench.Study) {
 				p.settings.Sweep.FractionWindowMS, p.topHz(), 1/(float64(p.halo)*p.bin)),
 			Remedy: fmt.Sprintf("at most %.3g ms, or 0 to have it chosen", limit*1e3)})
 	}
+	return nil
 }
 
 func roundTo(x float64, digits int) float64 {

@@ -1,8 +1,10 @@
 package sweep
 
 import (
+	"fmt"
 	"math"
 
+	"codeassay/estimators"
 	"codeassay/estimators/discrete"
 )
 
@@ -11,6 +13,10 @@ type windowTable = *discrete.Table
 
 // maxLevels bounds the levels that a stream and a code are quantised to.
 const maxLevels = 8
+
+// fewestWindows is the number of windows below which nothing can be counted: eight
+// samples for each cell of a table of two levels by two.
+const fewestWindows = 32
 
 // shifts is the number of circular shifts, over all draws of a size, from which
 // the null mean and variance of the plug-in information are measured.
@@ -47,6 +53,13 @@ func (p *plan) planWindows() error {
 		for _, span := range p.spans {
 			w.first = append(w.first, w.total)
 			w.total += span.Bins / w.bins
+		}
+		if w.total < fewestWindows {
+			p.warnings = append(p.warnings, estimators.Warning{Severity: estimators.Note, About: "plug-in",
+				Text: fmt.Sprintf("no plug-in information is given up to %g Hz: %d windows of %.4g s lie within jackknife blocks, fewer than %d",
+					band.High, w.total, float64(w.bins)*p.bin, fewestWindows),
+				Remedy: "a longer recording, longer segments, or a higher band"})
+			continue
 		}
 		// Eight samples a cell of the joint table: where the jackknife's bias
 		// falls to about one per cent.
