@@ -17,7 +17,7 @@ import (
 type Settings struct {
 	Cells        int        // 1024
 	DurationS    float64    // 300
-	EventRateHz  float64    // events a second of each cell; 6
+	EventRateHz  float64    // events a second of each cell at rest; 6
 	EventDepth   float64    // relative modulation of the hazard by one standard deviation of soma; 0.25
 	BurstShare   float64    // share of events that are bursts; 0.3
 	BurstDepth   float64    // change of that share by one standard deviation of dendrite; 0.09
@@ -58,8 +58,12 @@ func (s Settings) withDefaults() Settings {
 	return s
 }
 
-// validate returns an error for settings outside the range in which the truth
-// holds to about one per cent.
+// ceiling is the highest hazard relative to rest: that of 5 standard deviations
+// of soma.
+func (s Settings) ceiling() float64 { return 1 + 5*s.EventDepth }
+
+// validate returns an error for settings outside the range of the closed form: its
+// own error is 0.1 % at the defaults, up to 3.2 % where all limits meet (1024 cells).
 func (s Settings) validate() error {
 	switch {
 	case s.Cells < 1:
@@ -74,8 +78,8 @@ func (s Settings) validate() error {
 		return fmt.Errorf("burst_share = %g: between 0 and 1", s.BurstShare)
 	case !(s.BurstDepth >= 0 && 3*s.BurstDepth <= math.Min(s.BurstShare, 1-s.BurstShare)+1e-12):
 		return fmt.Errorf("burst_depth = %g: from 0 to a third of the distance of burst_share = %g to 0 and 1; beyond, the share would be cut off too often for the closed form", s.BurstDepth, s.BurstShare)
-	case s.DeadTimeMS < 1e3*2*longestISI+15:
-		return fmt.Errorf("dead_time_ms = %g: at least %g, so that bursts stay apart by more than 15 ms", s.DeadTimeMS, 1e3*2*longestISI+15)
+	case !(s.DeadTimeMS >= 1e3*2*longestISI+15 && s.DeadTimeMS <= 100):
+		return fmt.Errorf("dead_time_ms = %g: from %g, so that bursts stay apart by more than 15 ms, to 100", s.DeadTimeMS, 1e3*2*longestISI+15)
 	}
 	for i, hz := range s.BandwidthsHz {
 		if !(hz > 0 && hz <= 200) {
@@ -115,16 +119,33 @@ func NewPairedDrive(s Settings) (*PairedDrive, error) {
 	return p, nil
 }
 
-// flatNoise is Gaussian noise of unit variance, flat from 0 to the cut-off.
+// flatNoise is Gaussian noise of unit variance, flat from 0 to the cut-off: the
+// first n samples of a period that is quick to transform.
 func flatNoise(rng *rand.Rand, n int, cutoff float64) []float64 {
-	c := make([]complex128, n/2+1)
-	bins := max(1, int(cutoff*float64(n)*sampleInterval))
+	period := smoothLength(n)
+	c := make([]complex128, period/2+1)
+	bins := max(1, int(cutoff*float64(period)*sampleInterval))
 	// x is Σ 2 Re(c_k e^{…}), of variance 2 Σ |c_k|².
 	scale := complex(math.Sqrt(0.25/float64(bins)), 0)
 	for k := 1; k <= bins; k++ {
 		c[k] = scale * complex(rng.NormFloat64(), rng.NormFloat64())
 	}
-	return fourier.NewFFT(n).Sequence(nil, c)
+	return fourier.NewFFT(period).Sequence(nil, c)[:n:n]
+}
+
+// smoothLength is the least number from n on without a prime factor above 5.
+func smoothLength(n int) int {
+	for ; ; n++ {
+		rest := n
+		for _, factor := range []int{2, 3, 5} {
+			for rest%factor == 0 {
+				rest /= factor
+			}
+		}
+		if rest == 1 {
+			return n
+		}
+	}
 }
 
 // Settings in force, defaults included.
@@ -166,8 +187,7 @@ func (p *PairedDrive) Train(dst []int64, unit, _ int) []int64 {
 	end := p.trials[0].Duration
 	dead := int64(p.settings.DeadTimeMS * 1e6)
 	step := int64(math.Round(sampleInterval * 1e9))
-	const top = 5.0 // standard deviations of soma; the depth is at most 0.3 of them
-	ceiling := 1 + top*p.settings.EventDepth
+	ceiling := p.settings.ceiling()
 	mean := 1e9 / (p.hazard * ceiling)
 	dst = dst[:0]
 	for t := int64(rng.ExpFloat64() * mean); t < end; t += int64(rng.ExpFloat64() * mean) {

@@ -2,7 +2,6 @@ package synthetic
 
 import (
 	"math"
-	"math/cmplx"
 	"testing"
 
 	"github.com/stretchr/testify/assert"
@@ -17,63 +16,6 @@ func drive(t *testing.T, s Settings) *PairedDrive {
 	p, err := NewPairedDrive(s)
 	require.NoError(t, err)
 	return p
-}
-
-// Dead-time response and renewal spectrum: λ₀ = 100/s, τ = 5 ms give r₀ = 66.6667,
-// S(0) = 29.6296, S(50) = 36.2464, S(100) = 60.5334 and χ(100 Hz) = .605333 +
-// .192684i (Cox 1962; Franklin and Bair 1995; values agree with the renewal
-// formula evaluated in SciPy 1.10).
-func TestDeadTimeResponse(t *testing.T) {
-	x := &Truth{hazard: 100, dead: 0.005}
-	x.rate = 100 / 1.5
-	for f, want := range map[float64]float64{0: 29.6296, 50: 36.2464, 100: 60.5334} {
-		assert.InDelta(t, want, x.renewal(f)+x.rate, 1e-3)
-	}
-	chi := complex(1-x.rate*0.005, 0) / x.d(100)
-	assert.InDelta(t, 0, cmplx.Abs(chi-complex(.605333, .192684)), 1e-5)
-}
-
-// g solved in time has the transform β̂/D it is defined by.
-func TestResponseInTimeEqualsFrequency(t *testing.T) {
-	x := drive(t, Settings{Cells: 1, DurationS: 1}).Truth()
-	for _, f := range []float64{0, 3, 10, 20} {
-		assert.InDelta(t, 0, cmplx.Abs(transform(x.g, f)-x.response(f))/cmplx.Abs(x.response(0)), 2e-3)
-	}
-	// m = ∫ S ĝ by frequencies, against the time integral.
-	assert.InEpsilon(t, x.overBand(0, func(nu float64) float64 { return real(x.response(nu)) }), x.meanProduct, 5e-3)
-}
-
-// With neither dead time nor second stream the closed form is that of superposed
-// modulated Poisson cells: shared λ²a²S over a private λ.
-func TestWithoutDeadTimeItIsPoisson(t *testing.T) {
-	x := &Truth{hazard: 8, dead: 0, a: 0.2, p: 0.25, b: 0.05, cut: [2]float64{20, 20}, rate: 8}
-	x.solveResponse()
-	w := [5]float64{1, 1, 1, 1, 0}
-	quad := func(m [5][5]complex128) float64 {
-		s := complex(0, 0)
-		for i := range w {
-			for j := range w {
-				s += complex(w[i]*w[j], 0) * m[i][j]
-			}
-		}
-		return real(s)
-	}
-	assert.InDelta(t, 8, quad(x.Private(7)), 1e-9)
-	assert.InEpsilon(t, 64*0.04/40, quad(x.Shared(7)), 1e-5, "the time grid leaves one step")
-	// The residual: N λ p(1−p) private, λ²b²[S + a² S∗S] shared.
-	w = [5]float64{-.25, .75, .75, .75, 0}
-	assert.InDelta(t, 8*.25*.75, quad(x.Private(7)), 1e-9)
-	overlap := (40.0 - 7) / 1600 // S∗S of two flat bands at 7 Hz
-	assert.InEpsilon(t, 64*.0025*(1.0/40+.04*overlap), quad(x.Shared(7)), 0.01)
-	for _, f := range []float64{1, 15} { // matrices are Hermitian
-		for _, m := range [][5][5]complex128{x.Private(f), x.Shared(f)} {
-			for i := range 5 {
-				for j := range 5 {
-					assert.InDelta(t, 0, cmplx.Abs(m[i][j]-conj(m[j][i])), 1e-12)
-				}
-			}
-		}
-	}
 }
 
 // Cells keep to the rule and the trade's facts: in-burst intervals well below
@@ -102,7 +44,7 @@ func TestTrainsAreAsStated(t *testing.T) {
 			i = j
 		}
 	}
-	want := p.Truth().rate * 60 * 100
+	want := p.Truth().events.rate() * 60 * 100
 	// The streams make counts of all cells vary together, by far less than this.
 	assert.InEpsilon(t, want, events, 0.02)
 	assert.InDelta(t, 0.3, bursts/events, 0.01)
@@ -132,13 +74,68 @@ func TestStreamsHaveUnitVarianceAndTheirBand(t *testing.T) {
 	}
 }
 
+// The length of a recording may be a large prime number of samples.
+func TestStreamsOfAnyLength(t *testing.T) {
+	for n, want := range map[int]int{1: 1, 7: 8, 300000: 300000, 299993: 300000} {
+		assert.Equal(t, want, smoothLength(n))
+	}
+	p := drive(t, Settings{Cells: 1, DurationS: 29.989}) // 29989 is prime
+	assert.Len(t, p.Streams()[0].Samples, 29989)
+	assert.Equal(t, drive(t, Settings{Cells: 1, DurationS: 30}).Streams()[0].Samples[:29989], p.Streams()[0].Samples)
+}
+
+// A normal variable cut off at its mean keeps φ(0) and half of its slope.
+func TestClipped(t *testing.T) {
+	mean, slope := clipped(0, 1, 0, 50)
+	assert.InDelta(t, 1/math.Sqrt(2*math.Pi), mean, 1e-12)
+	assert.InDelta(t, 0.5, slope, 1e-12)
+	mean, slope = clipped(0.3, 0, 0, 1)
+	assert.Equal(t, [2]float64{0.3, 0}, [2]float64{mean, slope})
+}
+
+// The demo shows what it is for: each drive is best read by its own code, and the
+// pair carries nearly twice the bits of the spike rate about both.
+func TestDemoOfTwoDrives(t *testing.T) {
+	x := drive(t, Settings{DurationS: 1}).Truth()
+	const cells = 1024
+	own := residual(x.BurstShare())
+	for _, c := range linearCodes(x.BurstShare()) {
+		assert.LessOrEqual(t, bits(x, c.weights, cells, 0), bits(x, eventRate, cells, 0), c.name)
+		assert.LessOrEqual(t, bits(x, c.weights, cells, 1), bits(x, own, cells, 1), c.name)
+	}
+	spikes := 0.0
+	for i := range 100 {
+		f := 0.2 * (float64(i) + 0.5)
+		spikes -= 0.2 * math.Log2(1-coherence(x, spikeRate, cells, 0, f)-coherence(x, spikeRate, cells, 1, f))
+	}
+	pair := jointBits(x, eventRate, own, cells)
+	assert.InDelta(t, bits(x, eventRate, cells, 0)+bits(x, own, cells, 1), pair, 0.1, "the two are next to independent")
+	assert.InDelta(t, 1.82, pair/spikes, 0.01)
+}
+
+// The predicted error is below 0.1 % for the demo, grows with depth, crowding and
+// cells, and is finite where nothing is modulated.
+func TestPredictedError(t *testing.T) {
+	of := func(s Settings) float64 {
+		s.DurationS = 1
+		return drive(t, s).Truth().RelativeError()
+	}
+	demo := of(Settings{})
+	assert.Less(t, demo, 0.001)
+	assert.Greater(t, of(Settings{EventDepth: 0.3}), demo)
+	assert.Greater(t, of(Settings{EventRateHz: 12}), demo)
+	assert.Greater(t, of(Settings{Cells: 16384}), demo)
+	assert.Less(t, of(Settings{EventDepth: 1e-12, BurstDepth: 1e-12}), 0.001)
+	assert.Less(t, of(Settings{EventDepth: 0.3, EventRateHz: 13}), 0.05, "the corner of the range")
+}
+
 func TestSettingsOutsideTheRangeOfTruth(t *testing.T) {
 	cases := map[string]Settings{
 		"cells = -1: at least 1":       {Cells: -1},
 		"duration_s = 0.5: at least 1": {DurationS: 0.5},
 		"event_depth = 0.4: from 0 to 0.3; beyond, the hazard would be cut off at zero too often for the closed form":                                             {EventDepth: 0.4},
 		"burst_depth = 0.11: from 0 to a third of the distance of burst_share = 0.3 to 0 and 1; beyond, the share would be cut off too often for the closed form": {BurstDepth: 0.11},
-		"dead_time_ms = 20: at least 29, so that bursts stay apart by more than 15 ms":                                                                            {DeadTimeMS: 20},
+		"dead_time_ms = 20: from 29, so that bursts stay apart by more than 15 ms, to 100":                                                                        {DeadTimeMS: 20},
 		"event_rate_hz = 20: above 0, and with a dead time of 30 ms at most 13.3, so that cells are dead less than 40 % of the time":                              {EventRateHz: 20},
 		"bandwidths_hz = 300 (stream 2): above 0, at most 200":                                                                                                    {BandwidthsHz: [2]float64{20, 300}},
 	}
